@@ -1,0 +1,73 @@
+"""What a netlist does: time, accuracy, headroom, supply and voltages, each a pure function of a board."""
+
+from __future__ import annotations
+
+from modgen.analysis.accuracy import accuracy_budget
+from modgen.analysis.board import Board, Records
+from modgen.analysis.glide import channel_glides
+from modgen.analysis.headroom import headrooms
+from modgen.analysis.model import Analyses
+from modgen.analysis.power import rail_powers
+from modgen.analysis.voltage import net_bounds
+from modgen.netlist.model import Netlist
+from modgen.problems import InputError
+from modgen.spec.model import Spec
+
+__all__ = ["Analyses", "Board", "analyse", "analyse_board"]
+
+
+def analyse(netlist: Netlist, catalogue: Records, spec: Spec) -> Analyses:
+    """Everything that is computed on one netlist against one spec.
+
+    Parameters
+    ----------
+    netlist
+        The circuit, ours or one that came back from layout.
+    catalogue
+        Where the ``part`` fields are looked up.
+    spec
+        Supply, signal, range and budgets.
+
+    Returns
+    -------
+    Analyses
+        Glide times, accuracy, headroom, rails and voltages.
+
+    Raises
+    ------
+    InputError
+        When the value of a resistor, control or capacitor is not a number; all of them at once.
+    """
+    return analyse_board(Board.of(netlist, catalogue), spec)
+
+
+def analyse_board(board: Board, spec: Spec) -> Analyses:
+    """The same for a netlist that is a board already.
+
+    Parameters
+    ----------
+    board
+        The netlist seen as electronics.
+    spec
+        Supply, signal, range and budgets.
+
+    Returns
+    -------
+    Analyses
+        Glide times, accuracy, headroom, rails and voltages.
+
+    Raises
+    ------
+    InputError
+        When the value of a resistor, control or capacitor is not a number; all of them at once.
+    """
+    if board.unreadable:
+        raise InputError(board.unreadable)
+    powers = rail_powers(board, spec.rails, spec.signal)
+    return Analyses(
+        glide=channel_glides(board, spec.glide),
+        accuracy=accuracy_budget(board, spec.signal, spec.accuracy),
+        headroom=headrooms(board, powers, spec.signal, spec.accuracy),
+        rails=powers,
+        bounds=tuple(net_bounds(board, spec.rails).values()),
+    )

@@ -74,11 +74,18 @@ class Headroom:
     needed_high: float
     can_low: float
     can_high: float
+    #: what the low end of a swing may miss on a single supply, because there it is an offset [V]
+    allowance: float = 0.0
+
+    @property
+    def shortfall(self) -> float:
+        """How far the low end is missed, whether or not the allowance covers it [V]."""
+        return max(0.0, self.can_low - self.needed_low)
 
     @property
     def margin(self) -> float:
         """The smaller distance from the need to the limit [V]; negative when it does not fit."""
-        return min(self.can_high - self.needed_high, self.needed_low - self.can_low)
+        return min(self.can_high - self.needed_high, self.needed_low + self.allowance - self.can_low)
 
 
 @dataclass(frozen=True)

@@ -70,6 +70,8 @@ class Part:
     pins: tuple[PinDef, ...]
     order_code: str = ""
     alternates: tuple[str, ...] = ()
+    #: what a designer must know before using it; not for the parts list
+    note: str = ""
     pack: int = 1
     prices: tuple[PriceBreak, ...] = ()
     #: (figure, evidence) for every electrical figure, dimension and price of the record

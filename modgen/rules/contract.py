@@ -92,6 +92,11 @@ class Context:
     spec: Spec | None = None
     #: (level, text) of the circuit library's own check
     library_messages: tuple[tuple[str, str], ...] = field(default=())
+    #: every rule name there is
+    known_rules: tuple[str, ...] = field(default=())
+    #: only for rules that run last: what the others found, and which of them ran
+    findings: tuple[Finding, ...] = field(default=())
+    ran: tuple[str, ...] = field(default=())
 
 
 class Rule:
@@ -106,6 +111,7 @@ class Rule:
     subject: ClassVar[str] = ""  # wiring, supply, ratings, signal, function, ordering
     level: ClassVar[str] = "error"
     needs_spec: ClassVar[bool] = False
+    runs_last: ClassVar[bool] = False  # looks at what the other rules found
 
     def __init_subclass__(cls) -> None:
         """Refuse a rule that is malformed, at import."""

@@ -1,0 +1,7 @@
+"""``python -m modgen``."""
+
+import sys
+
+from modgen.cli import main
+
+sys.exit(main())

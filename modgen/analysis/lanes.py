@@ -1,0 +1,286 @@
+"""Find the glide lanes of a board by structure: no role field and no net name decides.
+
+A lane is a buffer whose non-inverting input carries capacitance to 0 V and a way through exactly one
+control, and resistors in series with it, back to the output of another amplifier section.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from typing import TYPE_CHECKING
+
+from modgen.analysis.parts import Section, reference_order
+
+if TYPE_CHECKING:
+    from modgen.analysis.board import Board
+
+#: parts in series that a search follows before it gives up; ours has two
+_REACH = 6
+
+
+@dataclass(frozen=True)
+class Wiring:
+    """How a control stands in its lane.
+
+    form: ``rheostat`` (wiper tied to pin 3: clockwise is slower, a lifted wiper leaves the whole track),
+    ``reversed`` (wiper tied to pin 1: clockwise is faster), ``loose`` (far end open: a lifted wiper opens
+    the lane), ``loose-reversed``, ``fixed`` (wiper open, whole track in the way) or ``divider`` (three nets).
+    """
+
+    form: str
+    near: str  # net towards the first buffer
+    far: str  # net towards the glide capacitor
+
+    @property
+    def adjustable(self) -> bool:
+        """Whether turning it changes the time."""
+        return self.form != "fixed"
+
+    @property
+    def rising(self) -> bool:
+        """Whether clockwise raises the resistance."""
+        return self.form in ("rheostat", "loose", "divider")
+
+    @property
+    def fails_open(self) -> bool:
+        """Whether a lifted wiper breaks the way through."""
+        return self.form in ("loose", "loose-reversed", "divider")
+
+
+@dataclass(frozen=True)
+class Branch:
+    """One way from the glide net to 0 V through one capacitor, or through several in series."""
+
+    refs: tuple[str, ...]
+
+
+@dataclass(frozen=True)
+class Feed:
+    """One output: the resistor between the amplifier and the socket (``""`` for none), net, sockets."""
+
+    resistor: str
+    net: str
+    jacks: tuple[str, ...]
+
+
+@dataclass(frozen=True)
+class Lane:
+    """One channel as it is wired."""
+
+    channel: int
+    input_net: str | None  # tip of the socket that feeds it
+    input_jacks: tuple[str, ...]
+    terminators: tuple[str, ...]  # resistors from input_net to 0 V
+    input_series: tuple[str, ...]
+    first: Section
+    isolating: tuple[str, ...]
+    control: str
+    wiring: Wiring
+    glide_net: str
+    branches: tuple[Branch, ...]  # parallel ways to 0 V
+    second: Section
+    feeds: tuple[Feed, ...]
+    inside_loop: bool
+    feedback: str | None
+    compensation: str | None
+
+    @property
+    def capacitors(self) -> tuple[str, ...]:
+        """Every glide capacitor."""
+        return tuple(ref for branch in self.branches for ref in branch.refs)
+
+    @property
+    def output_series(self) -> tuple[str, ...]:
+        """Every output resistor."""
+        return tuple(feed.resistor for feed in self.feeds if feed.resistor)
+
+    @property
+    def output_nets(self) -> tuple[str, ...]:
+        """Every output net."""
+        return tuple(feed.net for feed in self.feeds)
+
+    @property
+    def output_jacks(self) -> tuple[str, ...]:
+        """Every output socket."""
+        return tuple(ref for feed in self.feeds for ref in feed.jacks)
+
+
+def find_lanes(board: Board) -> tuple[Lane, ...]:
+    """Every lane of a board, sorted by channel.
+
+    Parameters
+    ----------
+    board
+        The netlist seen as electronics.
+
+    Returns
+    -------
+    tuple of Lane
+        The channel number is the control's ``channel`` field; a lane without one, or with one that is
+        taken, gets the lowest free number in the order of the control's reference.
+    """
+    found = [lane for section in board.sections if (lane := _lane(board, section)) is not None]
+    found.sort(key=lambda lane: reference_order(lane.control))
+    numbered: dict[int, Lane] = {}
+    loose = []
+    for lane in found:
+        if lane.channel and lane.channel not in numbered:
+            numbered[lane.channel] = lane
+        else:
+            loose.append(lane)
+    free = 1
+    for lane in loose:
+        while free in numbered:
+            free += 1
+        numbered[free] = replace(lane, channel=free)
+    return tuple(numbered[number] for number in sorted(numbered))
+
+
+def _lane(board: Board, second: Section) -> Lane | None:
+    glide_net = second.noninverting
+    if glide_net is None or glide_net in board.supply_nets:
+        return None
+    branches = _branches(board, glide_net)
+    way = _way_to_output(board, glide_net, second)
+    if not branches or way is None:
+        return None
+    refs, control, near, far, first = way
+    wiring = _wiring(board, control, near, far)
+    input_net, series = _way_to_input(board, first)
+    feeds, inside, feedback = _feeds(board, second)
+    compensation = None
+    if inside and second.output and second.inverting:
+        compensation = next(iter(board.ties(second.output, second.inverting, "capacitor")), None)
+    return Lane(
+        channel=board.channel(control),
+        input_net=input_net,
+        input_jacks=tuple(j.ref for j in board.jacks if input_net is not None and j.tip == input_net),
+        terminators=board.ties(input_net, board.ground, "resistor") if input_net else (),
+        input_series=series,
+        first=first,
+        isolating=refs,
+        control=control,
+        wiring=wiring,
+        glide_net=glide_net,
+        branches=branches,
+        second=second,
+        feeds=feeds,
+        inside_loop=inside,
+        feedback=feedback,
+        compensation=compensation,
+    )
+
+
+def _branches(board: Board, net: str) -> tuple[Branch, ...]:
+    """Ways to 0 V through capacitors alone, over nets that have nothing but two capacitors on them."""
+    out = []
+    for start in board.between(net, "capacitor"):
+        refs, at, last = [start.ref], start.net, start.ref
+        while at != board.ground:
+            onward = [n for n in board.between(at) if n.ref != last]
+            if len(board.on(at)) != 2 or len(onward) != 1 or onward[0].kind != "capacitor":
+                break
+            last, at = onward[0].ref, onward[0].net
+            if last in refs or at == net:
+                break
+            refs.append(last)
+        if at == board.ground:
+            out.append(Branch(tuple(refs)))
+    return tuple(out)
+
+
+def _way_to_output(
+    board: Board, net: str, second: Section
+) -> tuple[tuple[str, ...], str, str, str, Section] | None:
+    """The shortest way from a glide net to another section's output through one control.
+
+    Returns the resistors on it, the control, the nets on the control's near and far side, and that section.
+    """
+    outputs = {s.output: s for s in reversed(board.sections) if s.output and s.output != second.output}
+    best: list[tuple[int, list[tuple[str, int, str]], tuple[str, ...], str, str, str, Section]] = []
+    stack: list[tuple[str, tuple[str, ...], str, str, str, frozenset[str]]] = [
+        (net, (), "", "", "", frozenset({net}))
+    ]
+    while stack:
+        at, resistors, control, near, far, seen = stack.pop()
+        if at in outputs and control:
+            order = [reference_order(ref) for ref in (control, *resistors)]
+            best.append((len(order), order, resistors, control, near, far, outputs[at]))
+            continue
+        if len(resistors) + bool(control) >= _REACH:
+            continue
+        for step in board.between(at, "resistor", "control"):
+            if step.net in seen or step.net in board.supply_nets:
+                continue
+            onward = seen | {step.net}
+            if step.kind == "resistor":
+                stack.append((step.net, (step.ref, *resistors), control, near, far, onward))
+            elif not control:
+                stack.append((step.net, resistors, step.ref, step.net, at, onward))
+    if not best:
+        return None
+    _, _, resistors, control, near, far, first = min(best, key=lambda found: found[:2])
+    return resistors, control, near, far, first
+
+
+def _wiring(board: Board, control: str, near: str, far: str) -> Wiring:
+    one, wiper, three = (board.net(control, pin) for pin in ("1", "2", "3"))
+    # an end on a net of its own goes nowhere: it is open for all that the current knows
+    one, wiper, three = (net if net and len(board.on(net)) > 1 else None for net in (one, wiper, three))
+    if wiper is None:
+        form = "fixed"
+    elif wiper == three:
+        form = "rheostat"
+    elif wiper == one:
+        form = "reversed"
+    elif three is None:
+        form = "loose"
+    elif one is None:
+        form = "loose-reversed"
+    else:
+        form = "divider"
+    return Wiring(form, near, far)
+
+
+def _way_to_input(board: Board, first: Section) -> tuple[str | None, tuple[str, ...]]:
+    """The socket net that feeds a buffer, and the resistors on the way."""
+    tips = {jack.tip for jack in board.jacks if jack.tip}
+    start = first.noninverting
+    if start is None:
+        return None, ()
+    queue: list[tuple[str, tuple[str, ...]]] = [(start, ())]
+    seen = {start}
+    while queue:
+        at, refs = queue.pop(0)
+        if at in tips:
+            return at, refs
+        for step in board.between(at, "resistor"):
+            if step.net not in seen and step.net not in board.supply_nets:
+                seen.add(step.net)
+                queue.append((step.net, (step.ref, *refs)))
+    return None, ()
+
+
+def _feeds(board: Board, second: Section) -> tuple[tuple[Feed, ...], bool, str | None]:
+    """Outputs of a lane, whether an output resistor is inside the loop, and the feedback resistor."""
+    if second.output is None:
+        return (), False, None
+
+    def jacks_on(net: str) -> tuple[str, ...]:
+        return tuple(jack.ref for jack in board.jacks if jack.tip == net)
+
+    feeds = []
+    if jacks_on(second.output):
+        feeds.append(Feed("", second.output, jacks_on(second.output)))
+    inside, feedback = False, None
+    for step in board.between(second.output, "resistor"):
+        sensed = step.net == second.inverting
+        back = board.ties(step.net, second.inverting, "resistor") if second.inverting else ()
+        back = tuple(ref for ref in back if ref != step.ref)
+        closes = not second.follower and (sensed or bool(back))
+        if jacks_on(step.net):
+            feeds.append(Feed(step.ref, step.net, jacks_on(step.net)))
+            if closes:
+                inside = True
+                feedback = back[0] if back else None
+    return tuple(feeds), inside, feedback

@@ -1,0 +1,270 @@
+"""The glide network: which capacitor, control and isolating resistor, by exhaustive search.
+
+Every combination that the catalogue allows is looked at, as numpy arrays with one axis each for
+capacitor arrangements, controls and isolating resistors.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from modgen.catalogue import Catalogue
+from modgen.catalogue.records import Capacitor, Control, Resistor
+from modgen.design import practice
+from modgen.design.supply import Ends, price_at
+from modgen.formulas.glide import time_factor
+from modgen.spec.model import Spec
+
+if TYPE_CHECKING:
+    import numpy as np
+    from numpy.typing import NDArray
+
+    Floats = NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class Arrangement:
+    """A glide capacitor: one, or two polarised ones back to back (half the capacitance)."""
+
+    part: Capacitor
+    back_to_back: bool
+
+    @property
+    def capacitance(self) -> float:
+        """What the control sees [F]."""
+        return self.part.capacitance / 2 if self.back_to_back else self.part.capacitance
+
+    @property
+    def count(self) -> int:
+        """Parts per channel."""
+        return 2 if self.back_to_back else 1
+
+    @property
+    def leaky(self) -> bool:
+        """Whether its leakage is a current rather than an insulation resistance."""
+        return self.part.dielectric in practice.GLIDE_LEAKY
+
+
+@dataclass(frozen=True)
+class Network:
+    """One feasible combination with its figures [s, -, V, currency, m^2]."""
+
+    capacitor: Arrangement
+    control: Control
+    isolating: Resistor
+    shortest: float  # nominal or worst case, as the spec's cover asks
+    longest: float
+    scale: float
+    offset: float
+    cost: float
+    area: float
+    leaky: bool
+    oversized: bool
+    mismatch: float
+
+
+def arrangements(spec: Spec, catalogue: Catalogue) -> tuple[list[Arrangement], dict[str, str]]:
+    """Capacitors that may stand in the glide position, and why the others may not (dielectric -> reason)."""
+    asked = spec.build.capacitor
+    bipolar = spec.signal.low < 0
+    voltage = Ends.of(spec.rails).greatest
+    found: list[Arrangement] = []
+    refused: dict[str, str] = {}
+    for part in catalogue.of(Capacitor):
+        if part.mount != spec.build.mount:
+            continue
+        if asked != "auto" and asked not in (part.family, part.dielectric):
+            continue
+        if part.dielectric not in practice.GLIDE_DIELECTRICS + practice.GLIDE_LEAKY:
+            refused[part.dielectric] = "is piezoelectric, and its capacitance changes with the voltage on it"
+        elif part.dielectric in practice.GLIDE_LEAKY and spec.signal.pitch:
+            refused[part.dielectric] = "leaks tens to hundreds of cents through the control"
+        elif part.voltage * part.derating < voltage:
+            refused.setdefault(
+                part.dielectric,
+                f"at {part.derating:.0%} of its rating does not stand the {voltage:.4g} V of the rail",
+            )
+        else:
+            found.append(Arrangement(part, part.polarised and bipolar))
+    return found, refused
+
+
+def controls(spec: Spec, catalogue: Catalogue) -> tuple[list[Control], str]:
+    """Controls of the asked taper that stand the signal's greatest step, and why there are none."""
+    step = spec.signal.high - spec.signal.low
+    fit = [
+        c
+        for c in catalogue.of(Control)
+        if c.taper == spec.glide.taper and c.mount in ("panel", spec.build.mount)
+    ]
+    rated = [c for c in fit if c.voltage >= step]
+    if rated:
+        return rated, ""
+    if fit:
+        best = max(c.voltage for c in fit)
+        return (
+            [],
+            f"a step over the whole span puts {step:.4g} V across the control; the best is rated {best:.4g} V",
+        )
+    return [], f"the catalogue has no control with {spec.glide.taper} taper"
+
+
+def isolators(spec: Spec, catalogue: Catalogue) -> list[Resistor]:
+    """Isolating resistors: between what keeps the driving buffer stable and what is still a glide resistor.
+
+    Of resistors that differ in nothing the search looks at, only the one it would take is kept.
+    """
+    best: dict[tuple[float, float], tuple[tuple[float, float, str], Resistor]] = {}
+    for r in catalogue.of(Resistor):
+        if (
+            r.mount != spec.build.mount
+            or not practice.LEAST_ISOLATING <= r.resistance <= practice.MOST_ISOLATING
+        ):
+            continue
+        price, area = price_at(r, spec.channels * spec.order.boards), r.body.area
+        key = (area, price, r.key) if spec.build.prefer == "size" else (price, area, r.key)
+        like = (r.resistance, r.tolerance)
+        if like not in best or key < best[like][0]:
+            best[like] = (key, r)
+    return [best[like][1] for like in sorted(best)]
+
+
+class Grid:
+    """Every combination and its figures; made once and asked by every amplifier type in turn.
+
+    Arrays have the axes capacitor arrangement, control, isolating resistor; what is in range is kept as flat
+    arrays over ``index``.
+    """
+
+    def __init__(
+        self, spec: Spec, caps: Sequence[Arrangement], pots: Sequence[Control], resistors: Sequence[Resistor]
+    ) -> None:
+        import numpy as np
+
+        self.spec = spec
+        self.caps, self.pots, self.resistors = list(caps), list(pots), list(resistors)
+        factor = time_factor(spec.glide.measure, spec.glide.step, spec.glide.within)
+
+        def axis(values: list[float], place: int) -> Floats:
+            shape = [1, 1, 1]
+            shape[place] = len(values)
+            return np.array(values, dtype=float).reshape(shape)
+
+        c = factor * axis([a.capacitance for a in self.caps], 0)
+        c_tol = axis([a.part.tolerance for a in self.caps], 0)
+        track = axis([p.resistance for p in self.pots], 1)
+        track_tol = axis([p.tolerance for p in self.pots], 1)
+        r, r_tol = (
+            axis([x.resistance for x in self.resistors], 2),
+            axis([x.tolerance for x in self.resistors], 2),
+        )
+        #: greatest resistance between the driving buffer and the glide node [ohm]
+        self.resistance = r * (1 + r_tol) + track * (1 + track_tol)
+        if spec.glide.cover == "worst-case":
+            end = axis([p.end_high for p in self.pots], 1)
+            self.shortest = c * (1 + c_tol) * (r * (1 + r_tol) + end)
+            self.longest = c * (1 - c_tol) * (r * (1 - r_tol) + track * (1 - track_tol))
+        else:
+            end = axis([p.end for p in self.pots], 1)
+            self.shortest, self.longest = c * (r + end), c * (r + track)
+
+        signal = max(abs(spec.signal.low), abs(spec.signal.high))
+        self._insulation = axis(
+            [float("inf") if a.leaky else a.part.insulation(signal) for a in self.caps], 0
+        )
+        self._leakage = axis([a.part.leakage(signal) if a.leaky else 0.0 for a in self.caps], 0)
+        inside = (self.shortest <= spec.glide.shortest) & (self.longest >= spec.glide.longest)
+        self.index = np.argwhere(inside)
+        i, j, k = self.index.T
+        channels, boards = spec.channels, spec.order.boards
+
+        def total(caps: list[float], pots: list[float], resistors: list[float]) -> Floats:
+            return np.array(caps)[i] + np.array(pots)[j] + np.array(resistors)[k]
+
+        self.cost = total(
+            [a.count * price_at(a.part, a.count * channels * boards) for a in self.caps],
+            [price_at(p, channels * boards) for p in self.pots],
+            [price_at(x, channels * boards) for x in self.resistors],
+        )
+        self.area = total(
+            [a.count * a.part.body.area for a in self.caps],
+            [p.body.area for p in self.pots],
+            [x.body.area for x in self.resistors],
+        )
+        through = self.resistance[0, j, k]
+        self.through = through
+        self.scale = through / (through + self._insulation[i, 0, 0])
+        self.leak = through * self._leakage[i, 0, 0]
+        self.leaky = np.array([a.leaky for a in self.caps], dtype=bool)[i]
+        self.oversized = self.longest[i, j, k] > practice.OVERSIZE * spec.glide.longest
+        self.mismatch = (
+            self.longest[i, j, k] / spec.glide.longest * spec.glide.shortest / self.shortest[i, j, k]
+        )
+        self._names = (
+            _ranks([a.part.key for a in self.caps])[i],
+            _ranks([p.key for p in self.pots])[j],
+            _ranks([x.key for x in self.resistors])[k],
+        )
+
+    def ranked(self, bias: float, scale_left: float, offset_left: float, most: int = 40) -> list[Network]:
+        """The best combinations whose errors fit what is left of the budgets, best first.
+
+        Order: insulating dielectrics before leaking ones; ranges that are not oversized before those that are;
+        then ``prefer``, then how closely the range fits, then the parts' names.
+        """
+        import numpy as np
+
+        offset = self.leak + bias * self.through
+        fit = np.flatnonzero((self.scale <= scale_left) & (offset <= offset_left))
+        if not len(fit):
+            return []
+        span = self.spec.signal.high - self.spec.signal.low
+        error = (self.scale + offset / span)[fit]
+        cost, area = self.cost[fit], self.area[fit]
+        first = {"cost": (cost, error, area), "accuracy": (error, cost, area), "size": (area, cost, error)}
+        keys = (self.leaky[fit], self.oversized[fit], *first[self.spec.build.prefer], self.mismatch[fit])
+        # rounding keeps sums that differ only in the order of addition from deciding before the names do
+        rounded = [np.round(key.astype(float), 12) for key in keys]
+        order = np.lexsort((*(name[fit] for name in self._names[::-1]), *rounded[::-1]))
+        return [self._network(int(fit[n]), float(offset[fit[n]])) for n in order[:most]]
+
+    def _network(self, n: int, offset: float) -> Network:
+        i, j, k = (int(x) for x in self.index[n])
+        return Network(
+            capacitor=self.caps[i],
+            control=self.pots[j],
+            isolating=self.resistors[k],
+            shortest=float(self.shortest[i, j, k]),
+            longest=float(self.longest[i, j, k]),
+            scale=float(self.scale[n]),
+            offset=offset,
+            cost=float(self.cost[n]),
+            area=float(self.area[n]),
+            leaky=bool(self.leaky[n]),
+            oversized=bool(self.oversized[n]),
+            mismatch=float(self.mismatch[n]),
+        )
+
+    def nearest(
+        self, bias: float, scale_left: float, offset_left: float
+    ) -> tuple[float | None, float | None]:
+        """What can be had: the longest glide beside the asked shortest, the shortest beside the asked longest [s]."""
+        import numpy as np
+
+        scale = self.resistance / (self.resistance + self._insulation)
+        offset = self.resistance * (self._leakage + bias)
+        within = (scale <= scale_left) & (offset <= offset_left)
+        quick = within & (self.shortest <= self.spec.glide.shortest)
+        slow = within & (self.longest >= self.spec.glide.longest)
+        longest = float(np.max(self.longest[quick])) if quick.any() else None
+        shortest = float(np.min(self.shortest[slow])) if slow.any() else None
+        return longest, shortest
+
+
+def _ranks(names: list[str]) -> NDArray[np.int64]:
+    import numpy as np
+
+    ordered = {name: n for n, name in enumerate(sorted(set(names)))}
+    return np.array([ordered[name] for name in names], dtype=np.int64)

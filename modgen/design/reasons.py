@@ -1,0 +1,207 @@
+"""Why each value was taken: reason, binding limit, margin and what lost, in words for the review."""
+
+from __future__ import annotations
+
+from modgen.design import practice
+from modgen.design.choose import Candidate, Outcome
+from modgen.design.model import Choice, Values
+from modgen.design.network import Network
+from modgen.design.stage import loading_paths
+from modgen.design.supply import Ends, reverse_stress
+from modgen.spec.model import Spec
+from modgen.units import format_quantity as text
+
+_ORDER = {"cost": "the least cost", "accuracy": "the least error", "size": "the least board area"}
+
+
+def choices(spec: Spec, outcome: Outcome, values: Values) -> tuple[Choice, ...]:
+    """Every decision of a design, with its reason."""
+    made = [_amplifier(spec, outcome, values), *_network(spec, outcome), _terminator(spec, values)]
+    made += [_input_series(spec, outcome, values), *_output(spec, values), *_supply(spec, outcome, values)]
+    return tuple(made)
+
+
+def role_reasons(made: tuple[Choice, ...]) -> dict[str, str]:
+    """The reason of each choice by the role of the parts it decided."""
+    return {choice.subject: choice.reason for choice in made}
+
+
+def _amplifier(spec: Spec, outcome: Outcome, values: Values) -> Choice:
+    best = outcome.best
+    stage = best.stage
+    count = {p.key: values.packages.count(p) for p in values.packages}
+    idle = sum(p.sections for p in values.packages) - 2 * spec.channels
+    packages = " and ".join(f"{n} x {key}" for key, n in count.items())
+    lost = [(other.stage.type, _lost(spec, best, other)) for other in outcome.others[:2]]
+    lost += [(name, why) for name, why in outcome.refused]
+    idle_text = f"; {idle} idle section{'s' if idle > 1 else ''} tied to 0 V" if idle else ""
+    return Choice(
+        "amplifier",
+        f"{stage.type}: {packages}",
+        f"{_ORDER[spec.build.prefer]} of the types that keep every limit"
+        f" ({len(outcome.others) + 1} of {len(outcome.others) + 1 + len(outcome.refused)} do){idle_text}",
+        f"{stage.headroom_at}, {text(stage.headroom, 'voltage')} left at the low end of the rails",
+        stage.headroom / max(abs(spec.signal.low), abs(spec.signal.high)),
+        tuple(lost),
+    )
+
+
+def _lost(spec: Spec, best: Candidate, other: Candidate) -> str:
+    if other.network.leaky != best.network.leaky or other.network.oversized != best.network.oversized:
+        return "its glide network fits the range less well"
+    if spec.build.prefer == "cost" and other.cost > best.cost:
+        return f"costs {other.cost / best.cost - 1:.1%} more for the board at the catalogue's invented prices"
+    if spec.build.prefer == "size" and other.area > best.area:
+        return f"takes {other.area / best.area - 1:.1%} more area"
+    if other.error > best.error:
+        return f"{1200 * other.error:.3g} instead of {1200 * best.error:.3g} cents of error, worst case"
+    return "equal in what was asked; it comes later by name"
+
+
+def _network(spec: Spec, outcome: Outcome) -> list[Choice]:
+    best = outcome.best.network
+    glide = spec.glide
+    worst = "worst case" if glide.cover == "worst-case" else "nominal"
+    lost: list[tuple[str, str]] = []
+    for other in outcome.networks:
+        pair = f"{other.capacitor.part.key} with {other.control.key} and {other.isolating.key}"
+        if (other.capacitor, other.control) != (best.capacitor, best.control) and len(lost) < 2:
+            lost.append((pair, _network_lost(spec, best, other)))
+    lost += list(outcome.dielectrics)
+    arrangement = " (two, back to back)" if best.capacitor.back_to_back else ""
+    reach = f"{text(best.shortest, 'time')} to {text(best.longest, 'time')} {worst} ({glide.measure})"
+    asked = f"{text(glide.shortest, 'time')} to {text(glide.longest, 'time')}"
+    low, high = 1 - best.shortest / glide.shortest, 1 - glide.longest / best.longest
+    isolating = (
+        f"the largest that keeps the shortest glide: {text(best.shortest, 'time')} of {text(glide.shortest, 'time')} asked, "
+        f"with {text(best.control.end, 'resistance')} left at the end of the control"
+    )
+    return [
+        Choice(
+            "glide-capacitor",
+            f"{best.capacitor.part.key}{arrangement}",
+            f"{_ORDER[spec.build.prefer]} of {outcome.combinations} combinations: reaches {reach} where {asked} is asked",
+            "the longest glide" if high <= low else "the shortest glide",
+            min(low, high),
+            tuple(lost),
+        ),
+        Choice(
+            "glide-control",
+            best.control.key,
+            f"with this capacitor it reaches {text(best.longest, 'time')}; {text(best.control.end, 'resistance')} "
+            f"can be left at its end; rated {text(best.control.voltage, 'voltage')} for a step of "
+            f"{text(spec.signal.high - spec.signal.low, 'voltage')}",
+            "the longest glide",
+            high,
+        ),
+        Choice("isolating", best.isolating.key, isolating, "the shortest glide", low),
+    ]
+
+
+def _network_lost(spec: Spec, best: Network, other: Network) -> str:
+    if other.leaky and not best.leaky:
+        return "its leakage is an offset"
+    if other.oversized and not best.oversized:
+        return f"reaches {text(other.longest, 'time')}: most of the travel would lie beyond what is asked"
+    if spec.build.prefer == "cost" and other.cost > best.cost + 1e-9:
+        return f"costs {other.cost - best.cost:.2f} more a channel at the catalogue's invented prices"
+    if spec.build.prefer == "size" and other.area > best.area:
+        return f"takes {(other.area - best.area) * 1e6:.0f} mm2 more a channel"
+    if other.scale > best.scale:
+        return (
+            f"insulation costs {1200 * other.scale:.3g} instead of {1200 * best.scale:.3g} cents per octave"
+        )
+    return f"fits the range less closely ({text(other.shortest, 'time')} to {text(other.longest, 'time')})"
+
+
+def _terminator(spec: Spec, values: Values) -> Choice:
+    r = values.terminator
+    paths = loading_paths(spec)
+    error = spec.signal.source / (spec.signal.source + r.resistance * (1 - r.tolerance) / paths)
+    several = f", {paths} of them in parallel when chained inputs are unplugged" if paths > 1 else ""
+    return Choice(
+        "terminator",
+        r.key,
+        f"holds an open input at 0 V and loads a {text(spec.signal.source, 'resistance')} source by "
+        f"{1200 * error:.3g} cents per octave{several}",
+        "the scale budget",
+        1 - error / spec.accuracy.scale,
+    )
+
+
+def _input_series(spec: Spec, outcome: Outcome, values: Values) -> Choice:
+    a = outcome.best.stage.amplifier
+    r = values.input_series
+    worst = Ends.of(spec.rails).greatest
+    current = (worst - practice.JUNCTION) / r.resistance
+    return Choice(
+        "input-series",
+        r.key,
+        f"lets {text(current, 'current')} into the input of a module without power from a neighbour at "
+        f"{text(worst, 'voltage')}; {text(a.clamp_current, 'current')} is the limit",
+        "the input's clamp current",
+        1 - current / a.clamp_current,
+    )
+
+
+def _output(spec: Spec, values: Values) -> list[Choice]:
+    r = values.output_series
+    rail = Ends.of(spec.rails).greatest
+    limit = values.packages[0].short_circuit_most
+    current = min(rail / r.resistance, limit)
+    power = current * current * r.resistance
+    share = 1 - power / r.power
+    heat = f"an output shorted to 0 V puts {text(power, 'power')} into it, rated {text(r.power, 'power')}"
+    if not values.inside_loop:
+        error = r.resistance / (r.resistance + spec.signal.load)
+        reason = f"{heat}; into {text(spec.signal.load, 'resistance')} it costs {1200 * error:.3g} cents per octave"
+        return [Choice("output-series", r.key, reason, "power with the output shorted", share)]
+    assert values.feedback is not None
+    assert values.compensation is not None
+    return [
+        Choice(
+            "output-series",
+            r.key,
+            f"inside the feedback loop, where it costs nothing in scale; {heat}",
+            "power with the output shorted",
+            share,
+        ),
+        Choice(
+            "feedback", values.feedback.key, "takes the feedback from the jack, behind the output resistor"
+        ),
+        Choice(
+            "compensation",
+            values.compensation.key,
+            f"keeps the output amplifier stable into {text(practice.CABLE_CAPACITANCE, 'capacitance')} of cable: with the "
+            f"feedback resistor at least {practice.COMPENSATION_FACTOR:.0f} times the time constant of output resistor and cable",
+        ),
+    ]
+
+
+def _supply(spec: Spec, outcome: Outcome, values: Values) -> list[Choice]:
+    stage = outcome.best.stage
+    d, stress, rail = values.diode, reverse_stress(spec), Ends.of(spec.rails).greatest
+    made = [
+        Choice(
+            "reverse-polarity",
+            d.key,
+            f"blocks a header turned round ({text(stress, 'voltage')} of {text(d.reverse_voltage, 'voltage')}) and drops at most "
+            f"{text(stage.drop, 'voltage')} at {text(stage.current, 'current')}",
+            "reverse voltage",
+            1 - stress / d.reverse_voltage,
+        )
+    ]
+    for subject, c, purpose in (
+        ("reservoir", values.reservoir, "reservoir of each rail behind its diode"),
+        ("decoupling", values.decoupling, "one for each supply pin of each package"),
+    ):
+        made.append(
+            Choice(
+                subject,
+                c.key,
+                f"{purpose}; rated {text(c.voltage, 'voltage')} for {text(rail, 'voltage')}",
+                "rated voltage, derated",
+                1 - rail / (c.voltage * c.derating),
+            )
+        )
+    return made

@@ -1,0 +1,1 @@
+"""Whether the module does what the spec asks."""

@@ -1,0 +1,1 @@
+"""Whether the parts can be ordered and placed."""

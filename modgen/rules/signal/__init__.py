@@ -1,0 +1,1 @@
+"""What each amplifier can take and give."""

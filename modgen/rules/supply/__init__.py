@@ -1,0 +1,1 @@
+"""Protection, decoupling and range of the supply."""

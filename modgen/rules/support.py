@@ -1,0 +1,219 @@
+"""What several rules ask of a board: DC paths, closed contacts, rails traced from the header, wording."""
+
+from __future__ import annotations
+
+import heapq
+import math
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass
+
+from modgen.analysis.board import Board
+
+#: Pins of the 2x5 power header (design convention; common practice).
+HEADER_NEGATIVE = ("1", "2")
+HEADER_GROUND = ("3", "4", "5", "6", "7", "8")
+HEADER_POSITIVE = ("9", "10")
+
+
+def left(measured: float, limit: float) -> float:
+    """Share of an upper limit that is left [-]; negative beyond it."""
+    if limit <= 0:
+        return 0.0 if measured <= limit else -math.inf
+    return 1.0 - measured / limit
+
+
+def above(measured: float, limit: float) -> float:
+    """Share of a measured value that stands above its lower limit [-]; negative below it."""
+    if measured <= 0:
+        return -math.inf if limit > 0 else 0.0
+    return 1.0 - limit / measured
+
+
+def listed(names: Iterable[str]) -> str:
+    """Names as people list them: ``U1``, ``U1 and U2``, ``U1, U2 and U3``."""
+    words = list(names)
+    if len(words) < 2:
+        return "".join(words)
+    return f"{', '.join(words[:-1])} and {words[-1]}"
+
+
+# --- nets as one node while contacts are closed ----------------------------------------------------
+
+
+def groups(pairs: Iterable[tuple[str, str]]) -> Callable[[str], str]:
+    """Join pairs of nets; the result maps a net to the first name, in sorting order, of its group."""
+    parent: dict[str, str] = {}
+
+    def find(net: str) -> str:
+        while parent.setdefault(net, net) != net:
+            parent[net] = parent[parent[net]]
+            net = parent[net]
+        return net
+
+    for a, b in pairs:
+        low, high = sorted((find(a), find(b)))
+        parent[high] = low
+    return find
+
+
+def closed_contacts(board: Board) -> tuple[tuple[str, str, str], ...]:
+    """``(jack, tip net, switch net)`` of every switched contact that joins two nets with nothing plugged in."""
+    return tuple(
+        (jack.ref, jack.tip, jack.switch)
+        for jack in board.jacks
+        if jack.tip and jack.switch and jack.tip != jack.switch
+    )
+
+
+# --- DC paths -----------------------------------------------------------------------------------
+
+
+def least_path(
+    board: Board,
+    start: str,
+    ends: Iterable[str],
+    contacts: Iterable[tuple[str, str, str]] = (),
+    through: Callable[[str], bool] | None = None,
+) -> tuple[float, str, tuple[str, ...]] | None:
+    """The way of least resistance from a net to one of several, through resistors and controls.
+
+    Parameters
+    ----------
+    board
+        The board.
+    start
+        Where it begins.
+    ends
+        Nets at which it may end.
+    contacts
+        Closed jack contacts, as of :func:`closed_contacts`, that may be used at no resistance.
+    through
+        Which nets may be passed on the way; all by default.
+
+    Returns
+    -------
+    tuple or None
+        Resistance [ohm] (a part without a readable value counts as 0), the net where it ends, and the
+        parts on the way; None when there is none.
+    """
+    goals = set(ends)
+    joined: dict[str, list[tuple[str, str]]] = {}
+    for jack, a, b in contacts:
+        joined.setdefault(a, []).append((jack, b))
+        joined.setdefault(b, []).append((jack, a))
+    heap: list[tuple[float, str, tuple[str, ...]]] = [(0.0, start, ())]
+    done: set[str] = set()
+    while heap:
+        ohms, at, refs = heapq.heappop(heap)
+        if at in done:
+            continue
+        done.add(at)
+        if at in goals:
+            return ohms, at, refs
+        if at != start and through is not None and not through(at):
+            continue
+        for step in board.between(at, "resistor", "control"):
+            if step.net not in done:
+                heapq.heappush(heap, (ohms + (board.value(step.ref) or 0.0), step.net, (*refs, step.ref)))
+        for jack, net in joined.get(at, ()):
+            if net not in done:
+                heapq.heappush(heap, (ohms, net, (*refs, jack)))
+    return None
+
+
+# --- rails traced from the header ------------------------------------------------------------------
+
+
+@dataclass(frozen=True)
+class Rail:
+    """One supply as it is wired: at the header, the diodes in series, and behind them.
+
+    ``sign`` is +1 or -1. ``diodes`` are those with one end on the bus and the other neither on it nor on 0 V.
+    """
+
+    sign: int
+    bus: str
+    diodes: tuple[str, ...]
+    protected: tuple[str, ...]
+
+    @property
+    def name(self) -> str:
+        """How people call it."""
+        return "positive rail" if self.sign > 0 else "negative rail"
+
+    @property
+    def nets(self) -> tuple[str, ...]:
+        """Every net of the rail."""
+        return (self.bus, *self.protected)
+
+
+def header_nets(board: Board, pins: Iterable[str]) -> tuple[str, ...]:
+    """Nets on these pins of the power headers, sorted."""
+    found = {board.net(ref, pin) for ref in board.parts_of("header") for pin in pins}
+    return tuple(sorted(net for net in found if net))
+
+
+def ground_nets(board: Board) -> tuple[str, ...]:
+    """The nets that are 0 V: on the header's middle pins, and the one of that name."""
+    return tuple(sorted({*header_nets(board, HEADER_GROUND), board.ground}))
+
+
+def rails(board: Board) -> tuple[Rail, ...]:
+    """The rails, positive first, traced from the header pins; by name when there is no header.
+
+    A net that an amplifier is not fed from is still a rail: what matters is where the bus gets to.
+    """
+    grounds = set(ground_nets(board))
+    headers = bool(board.parts_of("header"))
+    out = []
+    for sign, pins, bus_name, name in (
+        (1, HEADER_POSITIVE, board.bus_positive, board.positive),
+        (-1, HEADER_NEGATIVE, board.bus_negative, "V-"),
+    ):
+        buses = header_nets(board, pins) if headers else ()
+        if not headers:
+            buses = tuple(net for net in (bus_name, name) if net in board.netlist.by_net)[:1]
+        for bus in buses:
+            if bus in grounds:
+                continue
+            diodes = [n for n in board.between(bus, "diode") if n.net not in grounds]
+            # with no diode in between, the bus itself feeds the board
+            behind = tuple(sorted({n.net for n in diodes}))
+            out.append(Rail(sign, bus, tuple(n.ref for n in diodes), behind))
+    return tuple(out)
+
+
+def may_stay_open(board: Board, ref: str, pin: str) -> str:
+    """Why a pin may be left open; ``""`` when it may not.
+
+    The tip switch of a socket that feeds no amplifier input (an output socket) has nothing to normal, and
+    the negative pins of the header have nothing to feed on a board whose amplifiers stand on 0 V.
+    """
+    kind = board.kind(ref)
+    if kind == "jack" and pin == "TN" and not is_input(board, ref):
+        return "an output socket normals nothing"
+    if kind == "header":
+        grounds = set(ground_nets(board))
+        fed = {(s.negative in grounds) for s in board.sections}
+        if pin in HEADER_NEGATIVE and fed == {True} and not header_nets(board, HEADER_NEGATIVE):
+            return "the board has no negative rail"
+    return ""
+
+
+def is_input(board: Board, ref: str) -> bool:
+    """Whether a socket's tip leads to an amplifier input without being fed by an amplifier output.
+
+    A socket that nothing leads to counts as an input: its switch contact would be as open as its tip.
+    """
+    tip = board.net(ref, "T")
+    if tip is None:
+        return True
+    outputs = {s.output for s in board.sections if s.output}
+    stop = set(board.supply_nets)
+    path = least_path(board, tip, outputs, through=lambda net: net not in stop)
+    return path is None
+
+
+def is_polarised(board: Board, ref: str) -> bool:
+    """Whether a capacitor has a + end."""
+    return board.kind(ref) == "capacitor" and board.polarised(ref)

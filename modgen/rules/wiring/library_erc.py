@@ -1,0 +1,50 @@
+"""What the circuit library's own electrical check said."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterator
+
+from modgen.rules.contract import Context, Fault, Measurement, Rule
+
+#: levels of the circuit library -> levels of findings; anything else is shown as a note
+LEVEL_OF = {"error": "error", "warning": "warning"}
+
+
+class LibraryErc(Rule):
+    """The electrical rules check of the circuit library has nothing to say.
+
+    Checks:
+        Every message that the library's own check left while the circuit was built; its errors are errors here,
+        its warnings warnings.
+    Matters:
+        It knows the pin kinds of the library parts and sees conflicts of drivers by other means than our own rules.
+    Fails:
+        start from: lane
+        library: error Pin conflict on net CH1_BUF, OUTPUT pin 1/1 of U1 <==> OUTPUT pin 7/7 of U1
+    Passes:
+        start from: lane
+    Limits:
+        Has nothing to report on a netlist that was read from a file: the check runs only where a circuit is built.
+    References:
+        The circuit library's documentation, electrical rules checking.
+    """
+
+    name = "library-erc"
+    subject = "wiring"
+
+    def measure(self, context: Context) -> Iterator[Measurement]:
+        """Every message."""
+        known = {part.ref for part in context.board.netlist.parts}
+        for level, text in context.library_messages:
+            parts = tuple(sorted(set(re.findall(r"\b[A-Z]+[0-9]+\b", text)) & known))
+            yield Measurement(
+                parts=parts,
+                what=text,
+                fault=Fault(
+                    f"the circuit library reports: {text}",
+                    "its electrical check compares the kinds of all pins on each net",
+                    "look at the pins it names",
+                    level=LEVEL_OF.get(level.lower(), "note"),
+                ),
+            )

@@ -1,0 +1,314 @@
+"""One value of the page, by the kind its key has: a node in, a value in base SI units out.
+
+Every reader takes the node, the key's full name and its definition, and returns the value; what cannot be used
+is raised as :class:`Refused` with the problem at the node.
+"""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Callable
+from typing import Any
+
+from modgen.documents import Node, nearest, shown
+from modgen.problems import Problem
+from modgen.spec.keys import LONGEST_NAME, LONGEST_PATH, LONGEST_REASON, NONE, Key
+from modgen.spec.names import slug
+from modgen.units import QuantityError, parse_quantity, parse_span
+
+#: most values of one list on the page
+LONGEST_LIST = 1000
+#: narrowest span of a signal [V]: less is not a control voltage
+NARROWEST_SPAN = 1e-3
+#: a fraction of an octave that is one cent [-]
+CENT = 1.0 / 1200.0
+
+_WHOLE = re.compile(r"0|[1-9][0-9]{0,8}")
+_SIGNED = re.compile(r"[+-]?[0-9]+")
+_RULE = re.compile(r"[a-z]+(-[a-z]+)*")
+
+
+class Refused(Exception):
+    """A value that cannot be used."""
+
+    def __init__(self, *problems: Problem) -> None:
+        self.problems = problems
+        super().__init__()
+
+
+def read_value(node: Node, name: str, key: Key) -> Any:
+    """Read a value of any kind that is a scalar or a list of scalars.
+
+    Raises
+    ------
+    Refused
+        With every problem of the value.
+    """
+    return _READERS[key.kind](node, name, key)
+
+
+def refuse(node: Node, what: str, why: str = "", fix: str = "") -> Refused:
+    """A refusal with one problem at the node."""
+    return Refused(node.problem(what, why, fix))
+
+
+def scalar(node: Node, name: str, key: Key) -> str:
+    """The text of a single value that is there."""
+    like = f"write it like this: {name.rpartition('.')[2]}: {key.example or key.default}"
+    if node.kind != "scalar":
+        raise refuse(node, f"{name} is {node}, not a single value", f"{name}: {key.says}", like)
+    if node.blank:
+        raise refuse(
+            node,
+            f"{name} has no value",
+            f"{name}: {key.says}",
+            f"{like}; or remove the line" * (not key.required) or like,
+        )
+    return node.text
+
+
+def whole(node: Node, name: str, key: Key) -> int:
+    """A whole number, in digits; nothing that some reader of YAML takes for one."""
+    text = scalar(node, name, key)
+    why = f"{name} is a whole number {key.bounds}"
+    if _SIGNED.fullmatch(text) and not re.match(r"\+|-?0[0-9]", text):
+        if not _WHOLE.fullmatch(text) or not key.inside(int(text)):
+            raise refuse(node, f"{name} is {shown(text)}, outside its bounds", why, "write a number within the bounds")
+        return int(text)
+    raise refuse(
+        node,
+        f"{name} is '{shown(text)}', not a whole number",
+        why,
+        f"write digits only, for instance {key.example or key.default}",
+    )
+
+
+def flag(node: Node, name: str, key: Key) -> bool:
+    """Plain true or false; not the other words that YAML 1.1 takes for them."""
+    text = scalar(node, name, key)
+    if node.plain and text in ("true", "false"):
+        return text == "true"
+    raise refuse(
+        node,
+        f"{name} is '{shown(text)}', neither true nor false",
+        "other words, capitals and quotes mean different things to different readers of YAML",
+        "write true or false, in small letters and without quotes",
+    )
+
+
+def choice(node: Node, name: str, key: Key) -> str:
+    """One of some words."""
+    text = scalar(node, name, key)
+    if text in key.choices:
+        return text
+    near = nearest(text, key.choices)
+    raise refuse(
+        node,
+        f"{name} is '{shown(text)}', which is none of its choices",
+        f"the choices are {', '.join(key.choices)}",
+        f"did you mean '{near}'?" if near else f"write one of them, for instance {key.choices[0]}",
+    )
+
+
+def line(node: Node, name: str, key: Key, longest: int, forbidden: str = "\\") -> str:
+    """A text of one line that can be shown, printed and written to any file."""
+    text = scalar(node, name, key)
+    if text != text.strip():
+        raise refuse(
+            node, f"{name} begins or ends with a blank", f"{name} is '{shown(text)}'", "remove the blanks at its ends"
+        )
+    if not text:
+        raise refuse(
+            node,
+            f"{name} is an empty text",
+            f"{name}: {key.says}",
+            f"write one, for instance {key.example or key.default}",
+        )
+    if len(text) > longest:
+        raise refuse(
+            node, f"{name} has {len(text)} characters: '{shown(text)}'", f"at most {longest} are allowed", "shorten it"
+        )
+    for character in text:
+        if not character.isprintable() or character in forbidden:
+            what = "a backslash" if character == "\\" else f"the character U+{ord(character):04X}"
+            raise refuse(
+                node,
+                f"{name} holds {what}: '{shown(text)}'",
+                "backslashes, line breaks and characters that cannot be seen are not safe in every file that is written",
+                "use / between folders" if character == "\\" and key.kind in ("path", "paths") else "remove it",
+            )
+    return text
+
+
+def title(node: Node, name: str, key: Key) -> str:
+    """The module's name, which also has to make a folder's name."""
+    text = line(node, name, key, LONGEST_NAME)
+    if not slug(text):
+        raise refuse(
+            node,
+            f"{name} is '{shown(text)}', which leaves no name for the output folder",
+            "the folder's name is made of the letters a to z and the digits in it",
+            "add a word in Latin letters or a number",
+        )
+    return text
+
+
+def name_text(node: Node, name: str, key: Key) -> str:
+    """A name that only the catalogue can judge."""
+    return line(node, name, key, LONGEST_NAME)
+
+
+def rule(node: Node, name: str, key: Key) -> str:
+    """The name of a rule, judged by its form; which rules there are is not known here."""
+    text = line(node, name, key, LONGEST_NAME)
+    if not _RULE.fullmatch(text):
+        raise refuse(
+            node,
+            f"{name} is '{shown(text)}', which is not the name of a rule",
+            "rules are named in lower-case words joined by hyphens",
+            "'modgen rules' prints the names",
+        )
+    return text
+
+
+def reason(node: Node, name: str, key: Key) -> str:
+    """A sentence; line breaks of a block scalar count as blanks."""
+    text = " ".join(scalar(node, name, key).split())
+    return line(Node("scalar", node.place, text, plain=False), name, key, LONGEST_REASON)
+
+
+def path(node: Node, name: str, key: Key) -> str:
+    """A path as written; empty for none."""
+    text = line(node, name, key, LONGEST_PATH)
+    return "" if text == NONE and node.plain else text
+
+
+def texts(node: Node, name: str, key: Key) -> tuple[str, ...]:
+    """A list of texts; a single one may stand without the list."""
+    longest = LONGEST_PATH if key.kind == "paths" else LONGEST_NAME
+    forbidden = "\\" if key.kind == "paths" else "\\, "
+    if node.kind == "scalar":
+        return (_one(node, name, key, longest, forbidden),)
+    if node.kind == "mapping":
+        raise refuse(
+            node, f"{name} is a mapping, not a list", f"{name}: {key.says}", f"write it like this: {key.example}"
+        )
+    if len(node.items) > LONGEST_LIST:
+        raise refuse(node, f"{name} has {len(node.items)} entries", f"at most {LONGEST_LIST} are read", "shorten it")
+    if not node.items and key.kind == "parts":
+        raise refuse(node, f"{name} is an empty list", f"{name}: {key.says}", "name the parts, or remove the line")
+    found: list[str] = []
+    problems: list[Problem] = []
+    for number, item in enumerate(node.items, 1):
+        try:
+            text = _one(item, f"{name}[{number}]", key, longest, forbidden)
+        except Refused as refused:
+            problems.extend(refused.problems)
+            continue
+        if text in found:
+            problems.append(
+                item.problem(f"{name} names '{shown(text)}' twice", "once is enough", "remove one of the two")
+            )
+        found.append(text)
+    if problems:
+        raise Refused(*problems)
+    return tuple(found)
+
+
+def _one(node: Node, name: str, key: Key, longest: int, forbidden: str) -> str:
+    text = scalar(node, name, key)
+    if key.kind == "parts" and re.search("[, ]", text.strip()):
+        raise refuse(
+            node,
+            f"{name} is '{shown(text)}', more than one reference",
+            "a reference holds no blank and no comma",
+            f"write a list: {key.example}",
+        )
+    return line(node, name, key, longest, forbidden)
+
+
+def quantity(node: Node, name: str, key: Key) -> float:
+    """A number with a unit, within the bounds of its key."""
+    text = scalar(node, name, key)
+    return bounded(node, name, key, _parsed(node, name, text, key.dimension))
+
+
+def level(node: Node, name: str, key: Key) -> float:
+    """A voltage, or a pitch interval at 1 V per octave [V]."""
+    text = scalar(node, name, key)
+    return bounded(node, name, key, _parsed(node, name, text, "pitch" if _in_cents(text) else "voltage"))
+
+
+def scale(node: Node, name: str, key: Key) -> float:
+    """A share, or cents per octave [-]."""
+    text = scalar(node, name, key)
+    # one cent per octave is 1/1200 of the octave, as one cent is 1/1200 V
+    return bounded(node, name, key, _parsed(node, name, text, "pitch" if _in_cents(text) else "ratio"))
+
+
+def offset(node: Node, name: str, key: Key, span: float) -> float:
+    """A voltage, or a share of the span [V]."""
+    text = scalar(node, name, key)
+    if text.rstrip().endswith("%"):
+        return bounded(node, name, key, _parsed(node, name, text, "ratio") * span)
+    return bounded(node, name, key, _parsed(node, name, text, "voltage"))
+
+
+def span(node: Node, name: str, key: Key) -> tuple[float, float]:
+    """Lowest and highest voltage [V]."""
+    text = scalar(node, name, key)
+    try:
+        low, high = parse_span(text)
+    except QuantityError as error:
+        raise refuse(node, f"{name}: {error.what}", error.why, error.fix) from None
+    bounded(node, name, key, low)
+    bounded(node, name, key, high)
+    if high - low < NARROWEST_SPAN:
+        raise refuse(
+            node,
+            f"{name} is '{shown(text)}', narrower than 1 mV",
+            "a control voltage moves more than that",
+            "write ±5 V",
+        )
+    return low, high
+
+
+def bounded(node: Node, name: str, key: Key, value: float) -> float:
+    """The value, when it keeps the bounds of its key."""
+    if key.inside(value):
+        return value
+    raise refuse(
+        node,
+        f"{name} is '{shown(node.text)}', outside its bounds",
+        f"{name} may be {key.bounds}",
+        "write a value within the bounds",
+    )
+
+
+def _in_cents(text: str) -> bool:
+    return text.rstrip().casefold().endswith(("cent", "cents"))
+
+
+def _parsed(node: Node, name: str, text: str, dimension: str) -> float:
+    try:
+        return parse_quantity(text, dimension)
+    except QuantityError as error:
+        raise refuse(node, f"{name}: {error.what}", error.why, error.fix) from None
+
+
+_READERS: dict[str, Callable[[Node, str, Key], Any]] = {
+    "title": title,
+    "name": name_text,
+    "rule": rule,
+    "reason": reason,
+    "path": path,
+    "paths": texts,
+    "parts": texts,
+    "whole": whole,
+    "flag": flag,
+    "choice": choice,
+    "quantity": quantity,
+    "level": level,
+    "scale": scale,
+    "span": span,
+}

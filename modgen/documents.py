@@ -107,9 +107,7 @@ class Fields:
             subject = where or "the page"
             fix = f"write it like this: {example}" if example else "write it as lines of 'key: value'"
             problems.append(
-                node.problem(
-                    f"{subject} is {node}, not a mapping", f"{subject} is made of keys and values", fix
-                )
+                node.problem(f"{subject} is {node}, not a mapping", f"{subject} is made of keys and values", fix)
             )
 
     def take(self, key: str) -> Node | None:
@@ -129,7 +127,7 @@ class Fields:
         names = list(dict.fromkeys([*self._known, *known]))
         strangers = [name for text, (name, _) in self._entries.items() if text not in names]
         for name in strangers[:UNKNOWN_SHOWN]:
-            self.problems.append(unknown(name, names, f"key in {self.where}" if self.where else "key"))
+            self.problems.append(unknown(name, names, "key", self.where))
         if len(strangers) > UNKNOWN_SHOWN:
             self.problems.append(
                 strangers[UNKNOWN_SHOWN].problem(
@@ -147,15 +145,15 @@ def nearest(word: str, names: Iterable[str]) -> str:
     return lower[found[0]] if found else ""
 
 
-def unknown(node: Node, names: Iterable[str], subject: str) -> Problem:
+def unknown(node: Node, names: Iterable[str], subject: str, where: str = "") -> Problem:
     """The problem for a scalar that is none of ``names``; ``subject`` says what it ought to be.
 
-    The wording is ``unknown <subject> '<text>'``, then every known name, then the nearest one.
+    The wording is ``unknown <subject> '<text>' in <where>``, then every known name, then the nearest one.
     """
     known = list(names)
     near = nearest(node.text, known)
     return node.problem(
-        f"unknown {subject} '{shown(node.text)}'",
+        f"unknown {subject} '{shown(node.text)}'" + (f" in {where}" if where else ""),
         f"known here: {', '.join(known)}" if known else "no names are known here",
         f"did you mean '{near}'?" if near else "use one of the known names",
     )
@@ -211,9 +209,7 @@ def read_bytes(path: Path, *, what: str, limit: int) -> bytes:
             raise refuse(f"this is a folder, not a {what}", f"a {what} is one YAML file", "name the file")
         if not stat.S_ISREG(state.st_mode):
             # a device or a pipe can be endless, or wait for ever
-            raise refuse(
-                f"this is not a regular file, so no {what}", "devices and pipes are not read", "name a file"
-            )
+            raise refuse(f"this is not a regular file, so no {what}", "devices and pipes are not read", "name a file")
         size = state.st_size
         data = b""
         if size <= limit:
@@ -381,9 +377,7 @@ class _Composer:
             self._syntax(error)
         except (yaml.YAMLError, ValueError, OverflowError) as error:
             # the pure Python scanner converts escapes with chr(), which has limits of its own
-            self._report(
-                Place(self.file, 1, 1), f"this is not valid YAML: {shown(str(error))}", "", _QUOTING_FIX
-            )
+            self._report(Place(self.file, 1, 1), f"this is not valid YAML: {shown(str(error))}", "", _QUOTING_FIX)
         return self._top
 
     def _syntax(self, error: yaml.MarkedYAMLError) -> None:
@@ -396,9 +390,7 @@ class _Composer:
         begins = error.context_mark
         why = ""
         if begins and error.problem_mark and begins.line != error.problem_mark.line:
-            why = (
-                f"what cannot be completed here begins at line {begins.line + 1}, column {begins.column + 1}"
-            )
+            why = f"what cannot be completed here begins at line {begins.line + 1}, column {begins.column + 1}"
         self._report(place, f"this is not valid YAML: {said}", why, _QUOTING_FIX)
 
     def _too_deep(self, place: Place) -> None:

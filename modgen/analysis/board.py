@@ -6,6 +6,7 @@ catalogue: a netlist that came back from layout is judged by what it says, not b
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 from functools import cached_property
 from typing import Protocol
@@ -15,6 +16,7 @@ from modgen.analysis.model import Interval
 from modgen.analysis.parts import Jack, Neighbour, Section, field_number, reference_order
 from modgen.catalogue.records import Amplifier, Capacitor
 from modgen.catalogue.records import Part as Record
+from modgen.formulas.loading import parallel
 from modgen.netlist.model import Netlist, Part
 from modgen.problems import InputError, Place, Problem
 from modgen.units import QuantityError, read_value
@@ -22,6 +24,12 @@ from modgen.units import QuantityError, read_value
 __all__ = ["Board", "Jack", "Lane", "Neighbour", "Records", "Section"]
 
 GROUND = "0V"
+#: what a value is of, and how one is written
+_QUANTITIES = {
+    "resistor": ("resistance", "4.7k"),
+    "control": ("resistance", "1M"),
+    "capacitor": ("capacitance", "100n"),
+}
 _CLASSES = {"R": "resistor", "C": "capacitor", "D": "diode", "U": "amplifier", "J": "header"}
 
 
@@ -168,7 +176,7 @@ class Board:
         InputError
             When the value text is not a number.
         """
-        return self._interval_or_raise(ref, "resistance")
+        return self._interval_or_raise(ref)
 
     def capacitance(self, ref: str) -> Interval:
         """Capacitance with its tolerance [F].
@@ -178,28 +186,18 @@ class Board:
         InputError
             When the value text is not a number above zero.
         """
-        return self._interval_or_raise(ref, "capacitance")
+        return self._interval_or_raise(ref)
 
     @cached_property
     def unreadable(self) -> tuple[Problem, ...]:
-        """A problem for every resistor, control and capacitor whose value is not a number."""
-        out = []
-        for kind, what, example in (
-            ("resistor", "resistance", "4.7k"),
-            ("control", "resistance", "1M"),
-            ("capacitor", "capacitance", "100n"),
-        ):
-            for ref in self.parts_of(kind):
-                value = self.value(ref)
-                # a link of 0 ohm is a resistor; a capacitor of nothing is a mistake
-                if value is None or (kind != "resistor" and value == 0):
-                    out.append(_unreadable(self, ref, what, example))
-        return tuple(out)
+        """A problem for every resistor, control and capacitor whose value or tolerance cannot be used."""
+        found = (_fault(self, ref) for kind in _QUANTITIES for ref in self.parts_of(kind))
+        return tuple(problem for problem in found if problem is not None)
 
-    def _interval_or_raise(self, ref: str, what: str) -> Interval:
-        found = self.interval(ref)
-        if found is None or (what == "capacitance" and not found.nominal):
-            raise InputError([_unreadable(self, ref, what, "100n" if what == "capacitance" else "4.7k")])
+    def _interval_or_raise(self, ref: str) -> Interval:
+        problem, found = _fault(self, ref), self.interval(ref)
+        if problem is not None or found is None:
+            raise InputError([problem] if problem else [])
         return found
 
     def polarised(self, ref: str) -> bool:
@@ -208,6 +206,10 @@ class Board:
         if isinstance(record, Capacitor):
             return record.polarised
         return self.part(ref).field("dielectric") == "electrolytic"
+
+    def least_parallel(self, refs: Iterable[str]) -> float:
+        """Least resistance of resistors in parallel, each at its low end [ohm]; infinite for none."""
+        return parallel(*(self.resistance(ref).low for ref in refs))
 
     # --- nets ------------------------------------------------------------------------------------
 
@@ -302,8 +304,7 @@ class Board:
     def jacks(self) -> tuple[Jack, ...]:
         """Every socket with the nets of its tip, tip switch and sleeve."""
         return tuple(
-            Jack(ref, self.net(ref, "T"), self.net(ref, "TN"), self.net(ref, "S"))
-            for ref in self.parts_of("jack")
+            Jack(ref, self.net(ref, "T"), self.net(ref, "TN"), self.net(ref, "S")) for ref in self.parts_of("jack")
         )
 
     @cached_property
@@ -329,10 +330,27 @@ class Board:
         return None
 
 
-def _unreadable(board: Board, ref: str, what: str, example: str) -> Problem:
-    return Problem(
-        Place("netlist"),
-        f"{ref} has the value {board.part(ref).value!r}, which is not a {what}",
-        "every analysis of the netlist reads the values that stand in it",
-        f"give {ref} a plain number with one SI prefix and no unit, such as {example}",
-    )
+def _fault(board: Board, ref: str) -> Problem | None:
+    """What is wrong with the value of a part that needs one."""
+    kind = board.kind(ref)
+    if kind not in _QUANTITIES:
+        kind = "resistor"
+    what, example = _QUANTITIES[kind]
+    value = board.value(ref)
+    # a link of 0 ohm is a resistor; a capacitor or a control of nothing is a mistake
+    if value is None or (kind != "resistor" and value == 0):
+        return Problem(
+            Place("netlist"),
+            f"{ref} has the value {board.part(ref).value!r}, which is not a {what}",
+            "every analysis of the netlist reads the values that stand in it",
+            f"give {ref} a plain number with one SI prefix and no unit, such as {example}",
+        )
+    tolerance = board.rating(ref, "tolerance") or 0.0
+    if tolerance >= 1:
+        return Problem(
+            Place("netlist"),
+            f"{ref} has a tolerance of {100 * tolerance:g} %",
+            "a part that may be nothing at all has no least value to reckon with",
+            f"give {ref} a tolerance below 100 %",
+        )
+    return None

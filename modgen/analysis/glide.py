@@ -152,6 +152,12 @@ def time_at(board: Board, lane: Lane, glide: Glide, rotation: float) -> Interval
     return LaneValues.of(board, lane).interval(rotation, factor_of(glide))
 
 
+def longest_resistance(board: Board, lane: Lane) -> float:
+    """Greatest resistance between the first buffer and the glide capacitor, control at its slow end [ohm]."""
+    values = LaneValues.of(board, lane)
+    return values.resistance(1 - values.fastest, 1)
+
+
 def channel_glides(board: Board, glide: Glide) -> tuple[ChannelGlide, ...]:
     """Shortest, middle and longest time of every lane, with the share of boards that cover the range.
 
@@ -238,6 +244,7 @@ def covering(values: LaneValues, factor: float, shortest: float, longest: float,
     series = _total([spread(part) for part in values.isolating])
     track = spread(values.control)
     capacitance = _total([1 / _total([1 / spread(part) for part in branch]) for branch in values.branches])
+    least: NDArray[np.float64] | float
     if values.adjustable:
         least = uniform() * np.maximum(values.end[0], values.end[1] * track)
         # a control without end resistance still cannot leave more than all of it

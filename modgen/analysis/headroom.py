@@ -4,19 +4,18 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 
-from modgen.analysis.accuracy import offset_terms
 from modgen.analysis.board import Board, Lane
 from modgen.analysis.model import Headroom, RailPower
+from modgen.analysis.offset import offset_terms
 from modgen.analysis.parts import Section, reference_order
+from modgen.formulas.amplifier import reach
 from modgen.spec.model import Accuracy, Signal
 
 _INPUT = "input buffer"
 _OUTPUT = "output buffer"
 
 
-def headrooms(
-    board: Board, powers: Sequence[RailPower], signal: Signal, accuracy: Accuracy
-) -> tuple[Headroom, ...]:
+def headrooms(board: Board, powers: Sequence[RailPower], signal: Signal, accuracy: Accuracy) -> tuple[Headroom, ...]:
     """Headroom of each kind of stage.
 
     Parameters
@@ -71,6 +70,7 @@ def headrooms(
             low, high = max(r.swing_low for r in records), max(r.swing_high for r in records)
         else:
             low, high = max(r.common_mode_low for r in records), max(r.common_mode_high for r in records)
+        can_low, can_high = reach(bottom, top, low, high)
         out.append(
             Headroom(
                 stage=stage,
@@ -78,8 +78,8 @@ def headrooms(
                 parts=_packages(section for section, _, _ in found),
                 needed_low=min(need for _, need, _ in found),
                 needed_high=max(need for _, _, need in found),
-                can_low=bottom + low,
-                can_high=top - high,
+                can_low=can_low,
+                can_high=can_high,
                 allowance=allowance if subject == "swing" else 0.0,
             )
         )
@@ -90,15 +90,13 @@ def _packages(sections: Iterable[Section]) -> tuple[str, ...]:
     return tuple(sorted({section.package for section in sections}, key=reference_order))
 
 
-def _needs(
-    board: Board, lane: Lane, signal: Signal, single: bool
-) -> Iterable[tuple[str, str, Section, float, float]]:
+def _needs(board: Board, lane: Lane, signal: Signal, single: bool) -> Iterable[tuple[str, str, Section, float, float]]:
     """(stage, subject, section, lowest, highest) that a lane asks of its buffers [V]."""
     terms = offset_terms(board, lane, signal)
     first = sum(term.worst for term in terms if _INPUT in term.name)
     whole = sum(term.worst for term in terms)
 
-    def reach(offset: float, stretch: float = 1.0) -> tuple[float, float]:
+    def need(offset: float, stretch: float = 1.0) -> tuple[float, float]:
         # on a single supply an offset below 0 V cannot be followed; it is part of the allowance
         low = signal.low - (0.0 if single else offset)
         return low * stretch, (signal.high + offset) * stretch
@@ -108,6 +106,6 @@ def _needs(
         highest = max((board.resistance(ref).high for ref in lane.output_series), default=0.0)
         stretch += highest / signal.load
     yield _INPUT, "common mode", lane.first, signal.low, signal.high
-    yield _INPUT, "swing", lane.first, *reach(first)
-    yield _OUTPUT, "common mode", lane.second, *reach(first)
-    yield _OUTPUT, "swing", lane.second, *reach(whole, stretch)
+    yield _INPUT, "swing", lane.first, *need(first)
+    yield _OUTPUT, "common mode", lane.second, *need(first)
+    yield _OUTPUT, "swing", lane.second, *need(whole, stretch)

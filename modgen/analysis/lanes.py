@@ -6,6 +6,7 @@ control, and resistors in series with it, back to the output of another amplifie
 
 from __future__ import annotations
 
+from collections import deque
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
@@ -13,9 +14,6 @@ from modgen.analysis.parts import Section, reference_order
 
 if TYPE_CHECKING:
     from modgen.analysis.board import Board
-
-#: parts in series that a search follows before it gives up; ours has two
-_REACH = 6
 
 
 @dataclass(frozen=True)
@@ -83,6 +81,11 @@ class Lane:
     inside_loop: bool
     feedback: str | None
     compensation: str | None
+
+    @property
+    def buffers(self) -> tuple[tuple[str, Section], tuple[str, Section]]:
+        """Both sections, each with what it is called."""
+        return ("input buffer", self.first), ("output buffer", self.second)
 
     @property
     def capacitors(self) -> tuple[str, ...]:
@@ -189,38 +192,33 @@ def _branches(board: Board, net: str) -> tuple[Branch, ...]:
     return tuple(out)
 
 
-def _way_to_output(
-    board: Board, net: str, second: Section
-) -> tuple[tuple[str, ...], str, str, str, Section] | None:
+def _way_to_output(board: Board, net: str, second: Section) -> tuple[tuple[str, ...], str, str, str, Section] | None:
     """The shortest way from a glide net to another section's output through one control.
 
     Returns the resistors on it, the control, the nets on the control's near and far side, and that section.
     """
     outputs = {s.output: s for s in reversed(board.sections) if s.output and s.output != second.output}
-    best: list[tuple[int, list[tuple[str, int, str]], tuple[str, ...], str, str, str, Section]] = []
-    stack: list[tuple[str, tuple[str, ...], str, str, str, frozenset[str]]] = [
-        (net, (), "", "", "", frozenset({net}))
-    ]
-    while stack:
-        at, resistors, control, near, far, seen = stack.pop()
-        if at in outputs and control:
-            order = [reference_order(ref) for ref in (control, *resistors)]
-            best.append((len(order), order, resistors, control, near, far, outputs[at]))
-            continue
-        if len(resistors) + bool(control) >= _REACH:
-            continue
+    # breadth first over (net, control passed or not): the shortest way wins, of equal ones the lowest reference
+    queue: deque[tuple[str, tuple[str, ...], str, str, str]] = deque([(net, (), "", "", "")])
+    seen = {(net, False)}
+    while queue:
+        at, resistors, control, near, far = queue.popleft()
+        if control and at in outputs:
+            return resistors, control, near, far, outputs[at]
         for step in board.between(at, "resistor", "control"):
-            if step.net in seen or step.net in board.supply_nets:
+            if step.net in board.supply_nets or step.net == net:
                 continue
-            onward = seen | {step.net}
             if step.kind == "resistor":
-                stack.append((step.net, (step.ref, *resistors), control, near, far, onward))
+                onward = (step.net, (step.ref, *resistors), control, near, far)
             elif not control:
-                stack.append((step.net, resistors, step.ref, step.net, at, onward))
-    if not best:
-        return None
-    _, _, resistors, control, near, far, first = min(best, key=lambda found: found[:2])
-    return resistors, control, near, far, first
+                onward = (step.net, resistors, step.ref, step.net, at)
+            else:
+                continue
+            state = (onward[0], bool(onward[2]))
+            if state not in seen:
+                seen.add(state)
+                queue.append(onward)
+    return None
 
 
 def _wiring(board: Board, control: str, near: str, far: str) -> Wiring:
@@ -248,10 +246,10 @@ def _way_to_input(board: Board, first: Section) -> tuple[str | None, tuple[str, 
     start = first.noninverting
     if start is None:
         return None, ()
-    queue: list[tuple[str, tuple[str, ...]]] = [(start, ())]
+    queue: deque[tuple[str, tuple[str, ...]]] = deque([(start, ())])
     seen = {start}
     while queue:
-        at, refs = queue.pop(0)
+        at, refs = queue.popleft()
         if at in tips:
             return at, refs
         for step in board.between(at, "resistor"):
@@ -276,7 +274,6 @@ def _feeds(board: Board, second: Section) -> tuple[tuple[Feed, ...], bool, str |
     for step in board.between(second.output, "resistor"):
         sensed = step.net == second.inverting
         back = board.ties(step.net, second.inverting, "resistor") if second.inverting else ()
-        back = tuple(ref for ref in back if ref != step.ref)
         closes = not second.follower and (sensed or bool(back))
         if jacks_on(step.net):
             feeds.append(Feed(step.ref, step.net, jacks_on(step.net)))

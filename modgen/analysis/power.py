@@ -8,7 +8,7 @@ from modgen.analysis.board import Board, Lane
 from modgen.analysis.glide import LaneValues
 from modgen.analysis.model import RailPower
 from modgen.catalogue.records import Amplifier, Diode
-from modgen.formulas.supply import interpolate_drop
+from modgen.formulas.supply import behind_diode, interpolate_drop, rail_ends
 from modgen.spec.model import Rails, Signal
 
 
@@ -56,18 +56,17 @@ def rail_powers(board: Board, rails: Rails, signal: Signal) -> tuple[RailPower, 
         positive = name == "V+"
         draw = _draw(board, name, signal, positive)
         diode = _diode(board, bus, name, positive)
-        low, high = abs(voltage) * (1 - rails.tolerance), abs(voltage) * (1 + rails.tolerance)
-        sign = 1.0 if positive else -1.0
+        low, high = rail_ends(voltage, rails.tolerance)
         out.append(
             RailPower(
                 name=name,
                 diode=diode,
                 bus_nominal=voltage,
-                bus_low=sign * low,
-                bus_high=sign * high,
-                protected_nominal=sign * (abs(voltage) - drop(board, diode, draw.typical, worst=False)),
-                protected_low=sign * max(0.0, low - drop(board, diode, draw.greatest, worst=True)),
-                protected_high=sign * high,
+                bus_low=low,
+                bus_high=high,
+                protected_nominal=behind_diode(voltage, drop(board, diode, draw.typical, worst=False)),
+                protected_low=behind_diode(low, drop(board, diode, draw.greatest, worst=True)),
+                protected_high=high,
                 current_typical=draw.typical,
                 current_max=draw.greatest,
                 current_peak=draw.peak,

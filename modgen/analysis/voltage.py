@@ -57,12 +57,8 @@ def net_bounds(board: Board, rails: Rails | None) -> dict[str, Bound]:
     _spread(names, ties, driven, found)
     # nodes that no current can reach follow their capacitors, from a node that is known
     _spread(names, capacitive, dict(found), found)
-    out = {}
-    for name in sorted(names):
-        # a net that nothing known holds may stand anywhere the supply reaches
-        bottom, top = found.get(name, (min(low, 0.0), high))
-        out[name] = Bound(name, min(bottom, 0.0), max(top, 0.0))
-    return out
+    # a net that nothing known holds may stand anywhere the supply reaches
+    return {name: Bound(name, *found.get(name, (low, high))) for name in sorted(names)}
 
 
 def _driven(board: Board, low: float, high: float) -> dict[str, tuple[float, float]]:
@@ -196,20 +192,15 @@ def _difference(bounds: Mapping[str, Bound], one: str, two: str) -> tuple[float,
     return bounds[one].low - bounds[two].high, bounds[one].high - bounds[two].low
 
 
-def _string(
-    board: Board, bounds: Mapping[str, Bound], ref: str, ends: tuple[str, str]
-) -> tuple[float, float]:
+def _string(board: Board, bounds: Mapping[str, Bound], ref: str, ends: tuple[str, str]) -> tuple[float, float]:
     """The voltage across the whole string of capacitors that a capacitor is part of, seen its way round."""
     far = []
-    inner = False
     for net in ends:
         at, last = net, ref
         while len(board.on(at)) == 2:
             onward = [n for n in board.between(at, "capacitor") if n.ref != last]
             if len(onward) != 1 or onward[0].ref == ref:
                 break
-            last, at, inner = onward[0].ref, onward[0].net, True
+            last, at = onward[0].ref, onward[0].net
         far.append(at)
-    lowest, highest = _difference(bounds, far[0], far[1])
-    # inside a string a node may keep no charge at all: nothing across one part is always possible
-    return (min(lowest, 0.0), max(highest, 0.0)) if inner else (lowest, highest)
+    return _difference(bounds, far[0], far[1])

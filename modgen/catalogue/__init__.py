@@ -1,0 +1,36 @@
+"""What can be bought: typed records read from YAML, each figure with where it comes from."""
+
+from modgen.catalogue.listing import describe
+from modgen.catalogue.records import (
+    Amplifier,
+    Body,
+    Capacitor,
+    Control,
+    Diode,
+    Evidence,
+    Header,
+    Jack,
+    Part,
+    PinDef,
+    PriceBreak,
+    Resistor,
+)
+from modgen.catalogue.shelf import Catalogue, load_catalogue
+
+__all__ = [
+    "Amplifier",
+    "Body",
+    "Capacitor",
+    "Catalogue",
+    "Control",
+    "Diode",
+    "Evidence",
+    "Header",
+    "Jack",
+    "Part",
+    "PinDef",
+    "PriceBreak",
+    "Resistor",
+    "describe",
+    "load_catalogue",
+]

@@ -125,6 +125,8 @@ class Capacitor(Part):
             bounds.append(self.insulation_time / self.capacitance)
         if bounds:
             return min(bounds)
+        if not (self.leakage_rate or self.leakage_floor):
+            return float("inf")  # nothing is specified
         leak = self.leakage(voltage)
         return abs(voltage) / leak if leak > 0 else float("inf")
 

@@ -20,17 +20,30 @@ def read_land_patterns(path: Path) -> Mapping[str, str]:
     page = read_yaml(path, what="land-pattern file")
     if page.kind != "mapping":
         raise InputError(
-            [Problem(page.place, f"a {page.kind} where names were expected", "", "write lines like 'RESC2012X60N: my-0805'")]
+            [
+                Problem(
+                    page.place,
+                    f"a {page.kind} where names were expected",
+                    "",
+                    "write lines like 'RESC2012X60N: my-0805'",
+                )
+            ]
         )
     problems: list[Problem] = []
     names: dict[str, str] = {}
     for key, value in page.entries:
         if value.kind != "scalar" or not value.text.strip():
-            problems.append(Problem(value.place, f"no name for {key.text}", "", "write the layout library's name after it"))
+            problems.append(
+                Problem(value.place, f"no name for {key.text}", "", "write the layout library's name after it")
+            )
         elif "\\" in value.text or any(ord(c) < 32 for c in value.text):
             problems.append(
-                Problem(value.place, f"the name {value.text!r} holds a backslash or a control character",
-                        "a netlist cannot carry it", "leave it out")
+                Problem(
+                    value.place,
+                    f"the name {value.text!r} holds a backslash or a control character",
+                    "a netlist cannot carry it",
+                    "leave it out",
+                )
             )
         else:
             names[key.text] = value.text.strip()

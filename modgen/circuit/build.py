@@ -139,9 +139,7 @@ def _make_part(skidl: Any, circuit: Any, planned: PlannedPart) -> dict[tuple[str
         # references are given one line on; until then the part has one that no part of ours can have
         ref_prefix="?",
         tag=planned.tag,
-        pins=[
-            skidl.Pin(num=pin.number, name=pin.name, func=kinds[_PIN_KINDS[pin.kind]]) for pin in record.pins
-        ],
+        pins=[skidl.Pin(num=pin.number, name=pin.name, func=kinds[_PIN_KINDS[pin.kind]]) for pin in record.pins],
         value=part.value,
         footprint=part.land_pattern,
         description=record.description,

@@ -75,9 +75,7 @@ def _private_logging() -> types.ModuleType:
             made[name].manager = manager
         return made[name]
 
-    return _copy(
-        logging, setLoggerClass=set_class, getLogger=get_logger, FileHandler=_Discard, StreamHandler=_Discard
-    )
+    return _copy(logging, setLoggerClass=set_class, getLogger=get_logger, FileHandler=_Discard, StreamHandler=_Discard)
 
 
 def _private_os() -> types.ModuleType:

@@ -45,8 +45,11 @@ def fast_circuit(skidl: Any) -> Any:
 
 
 def _check_everything(circuit: Any) -> None:
-    """The library's checks of each net and part, without its search for every net by name."""
+    """The library's checks of each net and part, in order, without its search for every net by name."""
     for net in circuit.nets:
+        # the library keeps the pins of a net as a set made into a list: which pin a message names first is chance
+        pins = sorted(net.pins, key=str)
+        net.traversal = net.traversal._replace(pins=pins)
         net.ERC()
     for part in circuit.parts:
         part.ERC()

@@ -36,8 +36,8 @@ def parser() -> argparse.ArgumentParser:
     top.add_argument("--version", action="version", version=f"modgen {__version__}")
     commands = top.add_subparsers(dest="command", metavar="COMMAND", required=True)
 
-    def command(name: str, text: str, **more: str) -> argparse.ArgumentParser:
-        return commands.add_parser(name, help=text, description=text[0].upper() + text[1:] + ".", **more)
+    def command(name: str, text: str) -> argparse.ArgumentParser:
+        return commands.add_parser(name, help=text, description=text[0].upper() + text[1:] + ".")
 
     build = command("build", "compute, build, check and write the pack of each spec")
     build.add_argument("specs", nargs="+", metavar="SPEC", help="a spec (YAML)")
@@ -55,7 +55,9 @@ def parser() -> argparse.ArgumentParser:
 
     catalogue = command("catalogue", "print what can be bought, with ratings and evidence")
     catalogue.add_argument("filter", nargs="*", metavar="WORD", help="only parts that have all these words")
-    catalogue.add_argument("--add", action="append", default=[], metavar="FILE", help="with a catalogue file of your own")
+    catalogue.add_argument(
+        "--add", action="append", default=[], metavar="FILE", help="with a catalogue file of your own"
+    )
 
     rules = command("rules", "print the table of rules, or the page of one")
     rules.add_argument("name", nargs="?", metavar="NAME", help="a rule")

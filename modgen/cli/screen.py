@@ -7,7 +7,7 @@ from collections.abc import Iterable, Sequence
 from pathlib import Path
 
 from modgen.analysis.model import ChannelGlide, Interval
-from modgen.outputs.bom import reference_ranges
+from modgen.outputs.bom import short_ranges
 from modgen.outputs.model import Job
 from modgen.rules import Finding, Report, subjects
 from modgen.units import format_quantity
@@ -32,8 +32,10 @@ _ROLES = (
 def summary(job: Job, folder: Path) -> str:
     """Everything a person needs after a build: values, glide, margins, findings, verdict, where the files are."""
     spec = job.spec
-    rails = f"{_volts(spec.rails.positive)}" if spec.rails.single else (
-        f"{_volts(spec.rails.positive)} and {_volts(spec.rails.negative)}"
+    rails = (
+        f"{_volts(spec.rails.positive)}"
+        if spec.rails.single
+        else (f"{_volts(spec.rails.positive)} and {_volts(spec.rails.negative)}")
     )
     lines = [
         f"{spec.module}: {spec.channels} channel{'s' * (spec.channels > 1)}, {spec.jacks.inputs} in and "
@@ -114,7 +116,7 @@ def _values(job: Job) -> list[str]:
             if part.field("role") == role:
                 keys.setdefault(part.field("part"), []).append(part.ref)
         for key, refs in keys.items():
-            rows.append((role, job.netlist.by_ref[refs[0]].value, key, reference_ranges(refs)))
+            rows.append((role, job.netlist.by_ref[refs[0]].value, key, short_ranges(refs)))
     return _table(rows)
 
 
@@ -153,7 +155,7 @@ def _table(rows: Sequence[tuple[str, ...]]) -> list[str]:
 
 
 def _runs(numbers: Sequence[int]) -> str:
-    return reference_ranges([f"{n}" for n in numbers])
+    return short_ranges([f"{n}" for n in numbers])
 
 
 def _time(value: float) -> str:

@@ -66,11 +66,7 @@ def _values(spec: Spec, catalogue: Catalogue, outcome: Outcome) -> Values:
         rail,
         packages * rails * boards,
     )
-    missing = [
-        name
-        for name, part in (("reservoir", reservoir), ("decoupling capacitor", decoupling))
-        if part is None
-    ]
+    missing = [name for name, part in (("reservoir", reservoir), ("decoupling capacitor", decoupling)) if part is None]
     if reservoir is None or decoupling is None:
         raise InputError(
             [

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TypeVar
 
 from modgen.catalogue import Catalogue
 from modgen.catalogue.records import Capacitor, Control, Resistor
@@ -22,6 +22,7 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     Floats = NDArray[np.float64]
+    Numeric = TypeVar("Numeric", float, Floats)
 
 
 @dataclass(frozen=True)
@@ -48,6 +49,16 @@ class Arrangement:
 
 
 @dataclass(frozen=True)
+class Room:
+    """What an amplifier stage leaves to the network: its bias [A], budgets [-, V], the least isolating resistor [ohm]."""
+
+    bias: float
+    scale: float
+    offset: float
+    isolating: float
+
+
+@dataclass(frozen=True)
 class Network:
     """One feasible combination with its figures [s, -, V, currency, m^2]."""
 
@@ -61,6 +72,7 @@ class Network:
     cost: float
     area: float
     leaky: bool
+    biased: bool
     oversized: bool
     mismatch: float
 
@@ -94,11 +106,7 @@ def arrangements(spec: Spec, catalogue: Catalogue) -> tuple[list[Arrangement], d
 def controls(spec: Spec, catalogue: Catalogue) -> tuple[list[Control], str]:
     """Controls of the asked taper that stand the signal's greatest step, and why there are none."""
     step = spec.signal.high - spec.signal.low
-    fit = [
-        c
-        for c in catalogue.of(Control)
-        if c.taper == spec.glide.taper and c.mount in ("panel", spec.build.mount)
-    ]
+    fit = [c for c in catalogue.of(Control) if c.taper == spec.glide.taper and c.mount in ("panel", spec.build.mount)]
     rated = [c for c in fit if c.voltage >= step]
     if rated:
         return rated, ""
@@ -118,10 +126,7 @@ def isolators(spec: Spec, catalogue: Catalogue) -> list[Resistor]:
     """
     best: dict[tuple[float, float], tuple[tuple[float, float, str], Resistor]] = {}
     for r in catalogue.of(Resistor):
-        if (
-            r.mount != spec.build.mount
-            or not practice.LEAST_ISOLATING <= r.resistance <= practice.MOST_ISOLATING
-        ):
+        if r.mount != spec.build.mount or not practice.LEAST_ISOLATING <= r.resistance <= practice.MOST_ISOLATING:
             continue
         price, area = price_at(r, spec.channels * spec.order.boards), r.body.area
         key = (area, price, r.key) if spec.build.prefer == "size" else (price, area, r.key)
@@ -171,17 +176,17 @@ class Grid:
             self.shortest, self.longest = c * (r + end), c * (r + track)
 
         signal = max(abs(spec.signal.low), abs(spec.signal.high))
-        self._insulation = axis(
-            [float("inf") if a.leaky else a.part.insulation(signal) for a in self.caps], 0
-        )
+        self._insulation = axis([float("inf") if a.leaky else a.part.insulation(signal) for a in self.caps], 0)
         self._leakage = axis([a.part.leakage(signal) if a.leaky else 0.0 for a in self.caps], 0)
-        inside = (self.shortest <= spec.glide.shortest) & (self.longest >= spec.glide.longest)
+        # a hair of room, so that a range met exactly is not lost to rounding
+        inside = (self.shortest <= spec.glide.shortest * (1 + 1e-9)) & (self.longest >= spec.glide.longest * (1 - 1e-9))
         self.index = np.argwhere(inside)
         i, j, k = self.index.T
         channels, boards = spec.channels, spec.order.boards
 
         def total(caps: list[float], pots: list[float], resistors: list[float]) -> Floats:
-            return np.array(caps)[i] + np.array(pots)[j] + np.array(resistors)[k]
+            sums: Floats = np.array(caps)[i] + np.array(pots)[j] + np.array(resistors)[k]
+            return sums
 
         self.cost = total(
             [a.count * price_at(a.part, a.count * channels * boards) for a in self.caps],
@@ -195,42 +200,58 @@ class Grid:
         )
         through = self.resistance[0, j, k]
         self.through = through
+        self._isolating = r * (1 - r_tol)
+        self.isolating = self._isolating[0, 0, k]
         self.scale = through / (through + self._insulation[i, 0, 0])
         self.leak = through * self._leakage[i, 0, 0]
         self.leaky = np.array([a.leaky for a in self.caps], dtype=bool)[i]
         self.oversized = self.longest[i, j, k] > practice.OVERSIZE * spec.glide.longest
-        self.mismatch = (
-            self.longest[i, j, k] / spec.glide.longest * spec.glide.shortest / self.shortest[i, j, k]
-        )
+        self.mismatch = self.longest[i, j, k] / spec.glide.longest * spec.glide.shortest / self.shortest[i, j, k]
         self._names = (
             _ranks([a.part.key for a in self.caps])[i],
             _ranks([p.key for p in self.pots])[j],
             _ranks([x.key for x in self.resistors])[k],
         )
 
-    def ranked(self, bias: float, scale_left: float, offset_left: float, most: int = 40) -> list[Network]:
+    def ranked(self, room: Room, most: int = 40) -> list[Network]:
         """The best combinations whose errors fit what is left of the budgets, best first.
 
-        Order: insulating dielectrics before leaking ones; ranges that are not oversized before those that are;
-        then ``prefer``, then how closely the range fits, then the parts' names.
+        Order: insulating dielectrics before leaking ones; little bias through the control before much; ranges
+        that are not oversized before those that are; then ``prefer``, then how closely the range fits, then the parts' names.
         """
         import numpy as np
 
-        offset = self.leak + bias * self.through
-        fit = np.flatnonzero((self.scale <= scale_left) & (offset <= offset_left))
+        offset = self.leak + room.bias * self.through
+        fit = np.flatnonzero(
+            (self.scale <= room.scale) & (offset <= room.offset) & (self.isolating >= room.isolating * (1 - 1e-9))
+        )
         if not len(fit):
             return []
         span = self.spec.signal.high - self.spec.signal.low
         error = (self.scale + offset / span)[fit]
         cost, area = self.cost[fit], self.area[fit]
-        first = {"cost": (cost, error, area), "accuracy": (error, cost, area), "size": (area, cost, error)}
-        keys = (self.leaky[fit], self.oversized[fit], *first[self.spec.build.prefer], self.mismatch[fit])
+        steps = in_steps(cost, error, area)
+        first = {"cost": (0, 1, 2), "accuracy": (1, 0, 2), "size": (2, 0, 1)}[self.spec.build.prefer]
+        wanted, *others = (steps[n] for n in first)
+        keys = (
+            self.leaky[fit],
+            self._biased(room.bias)[fit],
+            self.oversized[fit],
+            wanted,
+            np.log(self.mismatch[fit]),
+            *others,
+        )
         # rounding keeps sums that differ only in the order of addition from deciding before the names do
-        rounded = [np.round(key.astype(float), 12) for key in keys]
+        rounded = [np.round(key.astype(float), 6) for key in keys]
         order = np.lexsort((*(name[fit] for name in self._names[::-1]), *rounded[::-1]))
-        return [self._network(int(fit[n]), float(offset[fit[n]])) for n in order[:most]]
+        return [self._network(int(fit[n]), room.bias) for n in order[:most]]
 
-    def _network(self, n: int, offset: float) -> Network:
+    def _biased(self, bias: float) -> NDArray[np.bool_]:
+        """Whether the amplifier's bias through the control takes more of the offset budget than it should."""
+        much: NDArray[np.bool_] = bias * self.through > practice.BIAS_SHARE * self.spec.accuracy.offset
+        return much
+
+    def _network(self, n: int, bias: float) -> Network:
         i, j, k = (int(x) for x in self.index[n])
         return Network(
             capacitor=self.caps[i],
@@ -239,28 +260,41 @@ class Grid:
             shortest=float(self.shortest[i, j, k]),
             longest=float(self.longest[i, j, k]),
             scale=float(self.scale[n]),
-            offset=offset,
+            offset=float(self.leak[n] + bias * self.through[n]),
             cost=float(self.cost[n]),
             area=float(self.area[n]),
             leaky=bool(self.leaky[n]),
+            biased=bool(self._biased(bias)[n]),
             oversized=bool(self.oversized[n]),
             mismatch=float(self.mismatch[n]),
         )
 
-    def nearest(
-        self, bias: float, scale_left: float, offset_left: float
-    ) -> tuple[float | None, float | None]:
+    def nearest(self, room: Room) -> tuple[float | None, float | None]:
         """What can be had: the longest glide beside the asked shortest, the shortest beside the asked longest [s]."""
         import numpy as np
 
         scale = self.resistance / (self.resistance + self._insulation)
-        offset = self.resistance * (self._leakage + bias)
-        within = (scale <= scale_left) & (offset <= offset_left)
+        offset = self.resistance * (self._leakage + room.bias)
+        within = (scale <= room.scale) & (offset <= room.offset) & (self._isolating >= room.isolating * (1 - 1e-9))
         quick = within & (self.shortest <= self.spec.glide.shortest)
         slow = within & (self.longest >= self.spec.glide.longest)
         longest = float(np.max(self.longest[quick])) if quick.any() else None
         shortest = float(np.min(self.shortest[slow])) if slow.any() else None
         return longest, shortest
+
+
+def in_steps(cost: Numeric, error: Numeric, area: Numeric) -> tuple[Numeric, Numeric, Numeric]:
+    """Cost, error [-] and area [m^2] counted in the steps that are told apart."""
+    return (
+        _whole(cost / practice.COST_STEP),
+        _whole(1200 * error / practice.ERROR_STEP),
+        _whole(area * 1e6 / practice.AREA_STEP),
+    )
+
+
+def _whole(value: Numeric) -> Numeric:
+    # a hair up, so that halves fall the same way however the sum was added
+    return (value + 0.5 + 1e-6) // 1
 
 
 def _ranks(names: list[str]) -> NDArray[np.int64]:

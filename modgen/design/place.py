@@ -46,9 +46,7 @@ class _References:
         return f"{letters}{self._count[letters]}"
 
 
-def place(
-    spec: Spec, values: Values, jack: Jack, header: Header, reasons: dict[str, str]
-) -> tuple[Placed, ...]:
+def place(spec: Spec, values: Values, jack: Jack, header: Header, reasons: dict[str, str]) -> tuple[Placed, ...]:
     """Every part of the module with its nets; ``reasons`` gives the text for a role."""
     references = _References()
     order = sections(values.packages)
@@ -56,9 +54,7 @@ def place(
     users: list[set[int]] = [set() for _ in values.packages]
     parts: list[Placed] = []
 
-    def add(
-        letters: str, record: Record, role: str, pins: dict[str, str], channel: int = 0, serves: str = ""
-    ) -> None:
+    def add(letters: str, record: Record, role: str, pins: dict[str, str], channel: int = 0, serves: str = "") -> None:
         parts.append(
             Placed(
                 references.next(letters),
@@ -81,9 +77,7 @@ def place(
         net = f"CH{channel}_"
         source = spec.input_of(channel)
         if source == channel:
-            add(
-                "J", jack, "input-jack", {"T": net + "IN", "TN": _normal(spec, channel), "S": GROUND}, channel
-            )
+            add("J", jack, "input-jack", {"T": net + "IN", "TN": _normal(spec, channel), "S": GROUND}, channel)
             add("R", values.terminator, "terminator", {"1": net + "IN", "2": GROUND}, channel)
         add("R", values.input_series, "input-series", {"1": f"CH{source}_IN", "2": net + "A"}, channel)
         connect(order[2 * channel - 2], net + "A", net + "BUF", net + "BUF", channel)

@@ -7,6 +7,18 @@ from __future__ import annotations
 
 #: Headroom that must be left between the signal and what the amplifier guarantees [V]. Common practice, no source.
 LEAST_HEADROOM = 0.25
+#: Share of its power rating that a resistor may take while an output is shorted: a fault that lasts as long as
+#: the plug is in, yet no normal state. Common practice, no source.
+SHORT_DERATING = 0.5
+#: What a shorted output should not exceed where there is a choice: every plug shorts the socket on its way in, and
+#: more than this heats the package and pulls at the rail [A]. Common practice, no source.
+MOST_SHORT = 25e-3
+#: Least rating of a diode in a supply lead: reservoirs charging and a shorted ribbon pass through it [A].
+#: Common practice, no source.
+LEAST_RECTIFIER = 0.5
+#: Steps in which candidates are told apart before the next criterion decides: finer differences than these
+#: are not worth a dearer part. Error in cents, cost in the catalogue's currency, area in mm2. Our choice.
+ERROR_STEP, COST_STEP, AREA_STEP = 0.1, 0.001, 1.0
 #: Share of a current or power rating that a design uses. Common practice, no source.
 CURRENT_DERATING = 0.5
 #: Isolating resistor ahead of a microfarad load: no amplifier datasheet supports the bare load [ohm].

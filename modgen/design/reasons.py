@@ -8,6 +8,8 @@ from modgen.design.model import Choice, Values
 from modgen.design.network import Network
 from modgen.design.stage import loading_paths
 from modgen.design.supply import Ends, reverse_stress
+from modgen.formulas.amplifier import clamp_current, short_power
+from modgen.formulas.loading import loading_error
 from modgen.spec.model import Spec
 from modgen.units import format_quantity as text
 
@@ -47,12 +49,18 @@ def _amplifier(spec: Spec, outcome: Outcome, values: Values) -> Choice:
 
 
 def _lost(spec: Spec, best: Candidate, other: Candidate) -> str:
+    if other.network.biased and not best.network.biased:
+        return f"its bias through the control is an offset of {text(other.network.offset, 'voltage')}"
     if other.network.leaky != best.network.leaky or other.network.oversized != best.network.oversized:
         return "its glide network fits the range less well"
+    if other.stage.output.hot and not best.stage.output.hot:
+        return f"draws more than {text(practice.MOST_SHORT, 'current')} when an output is shorted"
     if spec.build.prefer == "cost" and other.cost > best.cost:
         return f"costs {other.cost / best.cost - 1:.1%} more for the board at the catalogue's invented prices"
     if spec.build.prefer == "size" and other.area > best.area:
         return f"takes {other.area / best.area - 1:.1%} more area"
+    if spec.build.prefer == "size" and other.cost > best.cost:
+        return f"takes as much area and costs {other.cost / best.cost - 1:.1%} more at the catalogue's invented prices"
     if other.error > best.error:
         return f"{1200 * other.error:.3g} instead of {1200 * best.error:.3g} cents of error, worst case"
     return "equal in what was asked; it comes later by name"
@@ -73,14 +81,16 @@ def _network(spec: Spec, outcome: Outcome) -> list[Choice]:
     asked = f"{text(glide.shortest, 'time')} to {text(glide.longest, 'time')}"
     low, high = 1 - best.shortest / glide.shortest, 1 - glide.longest / best.longest
     isolating = (
-        f"the largest that keeps the shortest glide: {text(best.shortest, 'time')} of {text(glide.shortest, 'time')} asked, "
+        f"the largest that keeps the shortest glide: {text(best.shortest, 'time')} of "
+        f"{text(glide.shortest, 'time')} asked, "
         f"with {text(best.control.end, 'resistance')} left at the end of the control"
     )
     return [
         Choice(
             "glide-capacitor",
             f"{best.capacitor.part.key}{arrangement}",
-            f"{_ORDER[spec.build.prefer]} of {outcome.combinations} combinations: reaches {reach} where {asked} is asked",
+            f"{_ORDER[spec.build.prefer]} of {outcome.combinations} combinations: reaches {reach} "
+            f"where {asked} is asked",
             "the longest glide" if high <= low else "the shortest glide",
             min(low, high),
             tuple(lost),
@@ -108,16 +118,14 @@ def _network_lost(spec: Spec, best: Network, other: Network) -> str:
     if spec.build.prefer == "size" and other.area > best.area:
         return f"takes {(other.area - best.area) * 1e6:.0f} mm2 more a channel"
     if other.scale > best.scale:
-        return (
-            f"insulation costs {1200 * other.scale:.3g} instead of {1200 * best.scale:.3g} cents per octave"
-        )
+        return f"insulation costs {1200 * other.scale:.3g} instead of {1200 * best.scale:.3g} cents per octave"
     return f"fits the range less closely ({text(other.shortest, 'time')} to {text(other.longest, 'time')})"
 
 
 def _terminator(spec: Spec, values: Values) -> Choice:
     r = values.terminator
     paths = loading_paths(spec)
-    error = spec.signal.source / (spec.signal.source + r.resistance * (1 - r.tolerance) / paths)
+    error = loading_error(spec.signal.source, r.resistance * (1 - r.tolerance) / paths)
     several = f", {paths} of them in parallel when chained inputs are unplugged" if paths > 1 else ""
     return Choice(
         "terminator",
@@ -133,7 +141,7 @@ def _input_series(spec: Spec, outcome: Outcome, values: Values) -> Choice:
     a = outcome.best.stage.amplifier
     r = values.input_series
     worst = Ends.of(spec.rails).greatest
-    current = (worst - practice.JUNCTION) / r.resistance
+    current = clamp_current(worst, r.resistance)
     return Choice(
         "input-series",
         r.key,
@@ -147,13 +155,11 @@ def _input_series(spec: Spec, outcome: Outcome, values: Values) -> Choice:
 def _output(spec: Spec, values: Values) -> list[Choice]:
     r = values.output_series
     rail = Ends.of(spec.rails).greatest
-    limit = values.packages[0].short_circuit_most
-    current = min(rail / r.resistance, limit)
-    power = current * current * r.resistance
+    power = short_power(rail, r.resistance, values.packages[0].short_circuit_most)
     share = 1 - power / r.power
     heat = f"an output shorted to 0 V puts {text(power, 'power')} into it, rated {text(r.power, 'power')}"
     if not values.inside_loop:
-        error = r.resistance / (r.resistance + spec.signal.load)
+        error = loading_error(r.resistance * (1 + r.tolerance), spec.signal.load)
         reason = f"{heat}; into {text(spec.signal.load, 'resistance')} it costs {1200 * error:.3g} cents per octave"
         return [Choice("output-series", r.key, reason, "power with the output shorted", share)]
     assert values.feedback is not None
@@ -166,14 +172,14 @@ def _output(spec: Spec, values: Values) -> list[Choice]:
             "power with the output shorted",
             share,
         ),
-        Choice(
-            "feedback", values.feedback.key, "takes the feedback from the jack, behind the output resistor"
-        ),
+        Choice("feedback", values.feedback.key, "takes the feedback from the jack, behind the output resistor"),
         Choice(
             "compensation",
             values.compensation.key,
-            f"keeps the output amplifier stable into {text(practice.CABLE_CAPACITANCE, 'capacitance')} of cable: with the "
-            f"feedback resistor at least {practice.COMPENSATION_FACTOR:.0f} times the time constant of output resistor and cable",
+            "keeps the output amplifier stable into "
+            f"{text(practice.CABLE_CAPACITANCE, 'capacitance')} of cable: with the "
+            f"feedback resistor at least {practice.COMPENSATION_FACTOR:.0f} times the time constant "
+            "of output resistor and cable",
         ),
     ]
 
@@ -185,7 +191,8 @@ def _supply(spec: Spec, outcome: Outcome, values: Values) -> list[Choice]:
         Choice(
             "reverse-polarity",
             d.key,
-            f"blocks a header turned round ({text(stress, 'voltage')} of {text(d.reverse_voltage, 'voltage')}) and drops at most "
+            f"blocks a header turned round ({text(stress, 'voltage')} of "
+            f"{text(d.reverse_voltage, 'voltage')}) and drops at most "
             f"{text(stage.drop, 'voltage')} at {text(stage.current, 'current')}",
             "reverse voltage",
             1 - stress / d.reverse_voltage,

@@ -22,7 +22,10 @@ from modgen.design.supply import (
     price_at,
     rail_current,
     supply_faults,
+    supply_left,
 )
+from modgen.formulas.amplifier import common_mode_error, follower_gain_error, short_power
+from modgen.formulas.loading import loading_error, parallel
 from modgen.spec.model import Spec
 from modgen.units import format_quantity
 
@@ -37,6 +40,7 @@ class OutputStage:
     compensation: Capacitor | None
     scale: float  # error into the load [-]
     drive: float  # how much further than the span the amplifier must go [-]
+    hot: bool  # whether a short draws more than practice would have it
 
 
 @dataclass(frozen=True)
@@ -74,11 +78,11 @@ def packagings(forms: Sequence[Amplifier], channels: int, prefer: str, boards: i
     quads = sorted((f for f in forms if f.sections == 4), key=lambda f: f.key)
     need = 2 * channels
     options: list[tuple[Amplifier, ...]] = []
-    for quad in quads or [None]:
-        for n in range(math.ceil(need / 4) + 1 if quad else 1):
-            whole = (quad,) * n if quad else ()
-            rest = max(0, math.ceil((need - 4 * n) / 2))
-            options += [whole + (dual,) * rest for dual in duals] if rest else [whole]
+    whole: list[tuple[Amplifier, ...]] = [()]
+    whole += [(quad,) * n for quad in quads for n in range(1, math.ceil(need / 4) + 1)]
+    for start in whole:
+        rest = max(0, math.ceil((need - 4 * len(start)) / 2))
+        options += [start + (dual,) * rest for dual in duals] if rest else [start]
 
     def key(option: tuple[Amplifier, ...]) -> tuple[float, ...]:
         counts = {p: option.count(p) for p in option}
@@ -89,6 +93,11 @@ def packagings(forms: Sequence[Amplifier], channels: int, prefer: str, boards: i
         return (round(first[0], 9), idle, round(first[1], 9), len(option))
 
     return min(options, key=lambda option: (*key(option), [p.key for p in option]))
+
+
+def buffers_error(a: Amplifier) -> float:
+    """Scale error of both buffers: common-mode rejection and open-loop gain, at their least [-]."""
+    return 2 * (common_mode_error(a.cmrr) + follower_gain_error(a.gain))
 
 
 def loading_paths(spec: Spec) -> int:
@@ -111,8 +120,7 @@ def terminators(spec: Spec, catalogue: Catalogue) -> Iterator[tuple[Resistor, fl
     )
 
     def error(r: Resistor) -> float:
-        load = r.resistance * (1 - r.tolerance) / parallel
-        return spec.signal.source / (spec.signal.source + load)
+        return loading_error(spec.signal.source, r.resistance * (1 - r.tolerance) / parallel)
 
     for share in practice.SOURCE_SHARES:
         for r in fit:
@@ -127,8 +135,10 @@ def output_stages(spec: Spec, catalogue: Catalogue, amplifier: Amplifier) -> lis
     boards = spec.channels * spec.order.boards
 
     def survives(r: Resistor) -> bool:
-        current = min(rail / r.resistance, amplifier.short_circuit_most)
-        return current * current * r.resistance <= r.power
+        return short_power(rail, r.resistance, amplifier.short_circuit_most) <= practice.SHORT_DERATING * r.power
+
+    def hot(r: Resistor) -> bool:
+        return min(rail / r.resistance, amplifier.short_circuit_most) > practice.MOST_SHORT
 
     fit = sorted(
         (
@@ -147,38 +157,32 @@ def output_stages(spec: Spec, catalogue: Catalogue, amplifier: Amplifier) -> lis
             high = r.resistance * (1 + r.tolerance)
             if r.resistance not in seen:
                 seen.add(r.resistance)
-                stages.append(OutputStage(r, False, None, None, high / (high + spec.signal.load), 0.0))
+                stages.append(OutputStage(r, False, None, None, loading_error(high, spec.signal.load), 0.0, hot(r)))
     single = spec.jacks.outputs == spec.channels
     if spec.output.protection != "outside" and single and fit:
         series = fit[0]
         feedback = series_resistor(spec, catalogue, amplifier, least=practice.LEAST_OUTPUT)
         if feedback is not None:
-            least = (
-                practice.COMPENSATION_FACTOR
-                * practice.CABLE_CAPACITANCE
-                * series.resistance
-                / feedback.resistance
-            )
-            c0g = [
-                c for c in catalogue.of(Capacitor) if c.mount == spec.build.mount and c.dielectric == "c0g"
-            ]
+            least = practice.COMPENSATION_FACTOR * practice.CABLE_CAPACITANCE * series.resistance / feedback.resistance
+            c0g = [c for c in catalogue.of(Capacitor) if c.mount == spec.build.mount and c.dielectric == "c0g"]
             compensation = capacitor_for(c0g, least, 20 * least, 2 * rail, boards)
             if compensation is not None:
                 drive = series.resistance * (1 + series.tolerance) / spec.signal.load
-                stages.append(OutputStage(series, True, feedback, compensation, 0.0, drive))
+                stages.append(OutputStage(series, True, feedback, compensation, 0.0, drive, hot(series)))
     return stages
 
 
 def series_resistor(spec: Spec, catalogue: Catalogue, amplifier: Amplifier, least: float) -> Resistor | None:
-    """The largest resistor up to practice's limit through which the bias takes a tenth of the offset budget at most."""
-    most = practice.MOST_SERIES
+    """The largest resistor up to practice's limit through which the bias takes a tenth of the offset budget at most.
+
+    When protection asks for more than practice likes, the smallest that protects.
+    """
+    most = max(practice.MOST_SERIES, 1.1 * least)
     if amplifier.bias_max > 0:
         most = min(most, practice.BIAS_SHARE * spec.accuracy.offset / amplifier.bias_max)
     boards = spec.channels * spec.order.boards
     fit = [
-        r
-        for r in catalogue.of(Resistor)
-        if r.mount == spec.build.mount and least <= r.resistance <= most * (1 + 1e-9)
+        r for r in catalogue.of(Resistor) if r.mount == spec.build.mount and least <= r.resistance <= most * (1 + 1e-9)
     ]
     return min(fit, key=lambda r: (-r.resistance, price_at(r, boards), r.body.area, r.key), default=None)
 
@@ -190,38 +194,40 @@ def stages_of(spec: Spec, catalogue: Catalogue, forms: Sequence[Amplifier]) -> t
     if fault:
         return [], fault
     packages = packagings(forms, spec.channels, spec.build.prefer, spec.order.boards)
-    clamp = (Ends.of(spec.rails).greatest - practice.JUNCTION) / (
-        practice.CURRENT_DERATING * amplifier.clamp_current
-    )
+    clamp = (Ends.of(spec.rails).greatest - practice.JUNCTION) / (practice.CURRENT_DERATING * amplifier.clamp_current)
     series = series_resistor(spec, catalogue, amplifier, least=clamp)
     if series is None:
         return [], (
-            f"its bias of {format_quantity(amplifier.bias_max, 'current')} through the {format_quantity(clamp, 'resistance')} "
+            f"its bias of {format_quantity(amplifier.bias_max, 'current')} through the "
+            f"{format_quantity(clamp, 'resistance')} "
             "that protects its input from a powered neighbour takes too much of the offset budget"
         )
     current = rail_current(spec, packages)
     diodes = [d for d in catalogue.of(Diode) if d.mount == spec.build.mount]
     usable = [d for d in diodes if not diode_fault(d, spec, current)]
     if not usable:
-        return [], "no diode fits the rail: " + "; ".join(
-            f"{d.key} {diode_fault(d, spec, current)}" for d in diodes
-        )
+        return [], "no diode fits the rail: " + "; ".join(f"{d.key} {diode_fault(d, spec, current)}" for d in diodes)
     options: list[Stage] = []
     blocks: list[tuple[float, str]] = []
     outputs = output_stages(spec, catalogue, amplifier)
+    termination = list(terminators(spec, catalogue))
     if not outputs:
         return [], "no output resistor in the catalogue survives a short at the output"
     for diode in usable:
         drop = greatest_drop(diode, current)
+        left = supply_left(spec, drop)
+        if left < amplifier.supply_least:
+            short = f"behind {diode.key} {format_quantity(left, 'voltage')} can be left across its supply pins"
+            blocks.append((left - amplifier.supply_least, f"{short}, and it needs {amplifier.supply_least:.4g} V"))
+            continue
         for output in outputs:
             margin, at = headroom(amplifier, spec, drop, output.drive)
             if margin < (0.0 if at.endswith("0 V") else practice.LEAST_HEADROOM):
-                blocks.append(
-                    (margin, f"{at}: {format_quantity(margin, 'voltage')} would be left behind {diode.key}")
-                )
+                how = "short" if margin < 0 else f"to spare, and {practice.LEAST_HEADROOM:.4g} V is wanted"
+                blocks.append((margin, f"{at} is {format_quantity(abs(margin), 'voltage')} {how} behind {diode.key}"))
                 continue
-            for terminator, loading in terminators(spec, catalogue):
-                scale = loading + output.scale + 2 / amplifier.cmrr + 2 / amplifier.gain
+            for terminator, loading in termination:
+                scale = loading + output.scale + buffers_error(amplifier)
                 offset = _offset(spec, amplifier, series, terminator, output)
                 if scale > spec.accuracy.scale or offset > spec.accuracy.offset:
                     continue
@@ -231,24 +237,23 @@ def stages_of(spec: Spec, catalogue: Catalogue, forms: Sequence[Amplifier]) -> t
                         catalogue,
                         packages,
                         diode,
-                        current,
-                        drop,
+                        (current, drop),
                         (margin, at),
-                        terminator,
+                        (terminator, loading),
                         series,
                         output,
                     )
                 )
     if options:
         return options, ""
-    if len(blocks) == len(usable) * len(outputs):
-        return [], "lacks headroom: " + max(blocks)[1]
+    if blocks:
+        return [], max(blocks)[1]
     return [], _budget_fault(spec, catalogue, amplifier, series, outputs)
 
 
 def _offset(spec: Spec, a: Amplifier, series: Resistor, terminator: Resistor, output: OutputStage) -> float:
     """Offset of both buffers without the glide network's part [V]."""
-    source = spec.signal.source * terminator.resistance / (spec.signal.source + terminator.resistance)
+    source = parallel(spec.signal.source, terminator.resistance)
     through = source + series.resistance * (1 + series.tolerance)
     if output.feedback is not None:
         through += output.feedback.resistance * (1 + output.feedback.tolerance)
@@ -266,14 +271,14 @@ def _budget_fault(
         )
     best = min(output.scale for output in outputs)
     loading = min((error for _, error in terminators(spec, catalogue)), default=float("inf"))
-    total = best + 2 / a.cmrr + 2 / a.gain + loading
+    total = best + buffers_error(a) + loading
     if total > spec.accuracy.scale:
         if loading == float("inf"):
             return "no terminator in the catalogue loads the source little enough for the scale budget"
         return (
             f"scale is off by {1200 * total:.3g} cents per octave at best; the budget is "
             f"{1200 * spec.accuracy.scale:.3g} (loading of the source {1200 * loading:.3g}, output resistor "
-            f"{1200 * best:.3g}, common-mode rejection {2400 / a.cmrr:.3g}, open-loop gain {2400 / a.gain:.3g})"
+            f"{1200 * best:.3g}, common-mode rejection and gain of two buffers {1200 * buffers_error(a):.3g})"
         )
     return "scale and offset budgets cannot both be kept"
 
@@ -283,18 +288,15 @@ def _stage(
     catalogue: Catalogue,
     packages: tuple[Amplifier, ...],
     diode: Diode,
-    current: float,
-    drop: float,
+    draw: tuple[float, float],
     margin: tuple[float, str],
-    terminator: Resistor,
+    termination: tuple[Resistor, float],
     series: Resistor,
     output: OutputStage,
 ) -> Stage:
     a = packages[0]
+    terminator, loading = termination
     boards, n, jacks = spec.order.boards, spec.channels, spec.jacks
-    parallel_error = spec.signal.source / (
-        spec.signal.source + terminator.resistance * (1 - terminator.tolerance) / loading_paths(spec)
-    )
     idle = sum(p.sections for p in packages) - 2 * n
     tie = series_resistor(spec, catalogue, a, least=1e3) if idle and a.ground_input_through_resistor else None
     bill: list[tuple[Amplifier | Diode | Resistor | Capacitor | None, int]] = [
@@ -312,15 +314,15 @@ def _stage(
         type=a.type,
         packages=packages,
         diode=diode,
-        current=current,
-        drop=drop,
+        current=draw[0],
+        drop=draw[1],
         headroom=margin[0],
         headroom_at=margin[1],
         terminator=terminator,
         input_series=series,
         output=output,
         idle_tie=tie,
-        scale=parallel_error + output.scale + 2 / a.cmrr + 2 / a.gain,
+        scale=loading + output.scale + buffers_error(a),
         offset=_offset(spec, a, series, terminator, output),
         cost=math.fsum(count * price_at(part, count * boards) for part, count in parts),
         area=math.fsum(count * part.body.area for part, count in parts),

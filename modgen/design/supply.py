@@ -62,13 +62,13 @@ def supply_faults(amplifier: Amplifier, spec: Spec) -> str:
         )
     if total > amplifier.supply_most:
         return f"is made for up to {volts(amplifier.supply_most)} across its supply pins; the rails are {volts(total)}"
-    least = ends.positive_low - ends.negative_low - (1 if spec.rails.single else 2) * practice.JUNCTION
-    if least < amplifier.supply_least:
-        return (
-            f"needs at least {volts(amplifier.supply_least)} across its supply pins; "
-            f"behind the protection {volts(least)} can be left"
-        )
     return ""
+
+
+def supply_left(spec: Spec, drop: float) -> float:
+    """What can be left across an amplifier's supply pins behind diodes of a drop, rails at their low end [V]."""
+    ends = Ends.of(spec.rails)
+    return ends.positive_low - ends.negative_low - (1 if spec.rails.single else 2) * drop
 
 
 def headroom(amplifier: Amplifier, spec: Spec, drop: float, drive: float) -> tuple[float, str]:
@@ -121,7 +121,15 @@ def diode_fault(diode: Diode, spec: Spec, current: float) -> str:
     """Why a diode cannot stand in a rail; empty when it can."""
     stress = reverse_stress(spec)
     if diode.reverse_voltage < stress:
-        return f"blocks {_volts(diode.reverse_voltage)}; a header turned round on charged reservoirs puts {_volts(stress)} on it"
+        return (
+            f"blocks {_volts(diode.reverse_voltage)}; a header turned round on charged reservoirs "
+            f"puts {_volts(stress)} on it"
+        )
+    if diode.forward_current < practice.LEAST_RECTIFIER:
+        return (
+            f"carries {format_quantity(diode.forward_current, 'current')}; a supply lead wants "
+            f"{format_quantity(practice.LEAST_RECTIFIER, 'current')} for charging reservoirs and a shorted ribbon"
+        )
     if diode.forward_current * practice.CURRENT_DERATING < current:
         return (
             f"carries {format_quantity(diode.forward_current, 'current')}; the rail draws "

@@ -147,9 +147,7 @@ def bom_lines(netlist: Netlist, records: Records) -> tuple[BomLine, ...]:
     return tuple(sorted(lines, key=lambda line: (line.letters, line.amount, line.key, line.refs)))
 
 
-def cost(
-    lines: Iterable[BomLine], boards: int, spares: float, stock: Mapping[str, int] | None = None
-) -> Cost:
+def cost(lines: Iterable[BomLine], boards: int, spares: float, stock: Mapping[str, int] | None = None) -> Cost:
     """What a number of boards needs and costs.
 
     Parameters

@@ -7,10 +7,12 @@ from __future__ import annotations
 
 import re
 from collections.abc import Mapping
+from contextlib import suppress
 
 from modgen.catalogue.records import Amplifier, Capacitor, Control, Diode, Header, Resistor
 from modgen.catalogue.records import Part as Record
 from modgen.outputs.pages import Cell
+from modgen.outputs.wording import pin_words
 from modgen.units import capacitor_code, colour_bands, rkm_code, tolerance_letter, value_text
 
 #: Chips shorter than this have nothing printed on them [m]: 1005 metric and smaller. Common practice.
@@ -18,6 +20,9 @@ LEAST_PRINTED_CHIP = 1.5e-3
 
 #: Resistors of this tolerance and better carry five bands [-]. Common practice.
 FIVE_BANDS = 0.02
+
+#: What an open pin is on.
+OPEN = "nothing"
 
 UNMARKED = "nothing is printed: take it from its labelled strip or bag, one value at a time"
 
@@ -78,13 +83,13 @@ def printed(record: Record) -> Cell:
         mark = "" if record.mount == "through-hole" else " (or the maker's short code for it)"
         return Cell(f"{_type_number(record)}{mark}, and a band at the cathode")
     if isinstance(record, Amplifier):
-        return Cell(f"{_type_number(record)}, before or after the maker's letters and a date code")
+        return Cell(f"{_type_number(record)}, with the maker's letters and a date code beside it")
     if isinstance(record, Control):
         return Cell(
             f"{value_text(record.resistance).upper()}, {record.taper} taper",
             more=("makers use different letters for the taper: go by the label of the bag",),
         )
-    return Cell("nothing that matters: there is one kind")
+    return Cell("nothing to read: there is one kind")
 
 
 def _resistor(record: Resistor) -> Cell:
@@ -122,10 +127,8 @@ def _capacitor(record: Capacitor) -> Cell:
     if record.mount == "surface":
         return Cell(UNMARKED)
     code = rkm_code(record.capacitance, "capacitance").replace("u", "µ")
-    try:
+    with suppress(ValueError):  # a value of more than two figures, or a tolerance without a letter
         code = f"{capacitor_code(record.capacitance)}{tolerance_letter(record.tolerance)} or {code}"
-    except ValueError:  # a value of more than two figures, or a tolerance without a letter
-        pass
     return Cell(code, more=(f"often with {volts} for the voltage",))
 
 
@@ -147,7 +150,7 @@ def net_words(net: str) -> str:
         ``CHk_GLIDE`` for ``CH3_GLIDE``; ``0 V`` for ``0V``; others as they are.
     """
     net = re.sub(r"^CH\d+_", "CHk_", net)
-    return {"0V": "0 V", "V-": "V\u2212", "BUS-": "BUS\u2212"}.get(net, net) or "nothing"
+    return {"0V": "0\u00a0V", "V-": "V\u2212", "BUS-": "BUS\u2212"}.get(net, net) or OPEN
 
 
 def orientation(record: Record, pins: Mapping[str, str]) -> Cell:
@@ -177,7 +180,9 @@ def orientation(record: Record, pins: Mapping[str, str]) -> Cell:
             f"+ = pin 1, to {net_words(pins.get('1', ''))}",
             more=(
                 f"\u2212 = pin 2, to {net_words(pins.get('2', ''))}",
-                "the dark segment is \u2212" if surface else "the longer lead is +, the stripe is \u2212",
+                "the dark segment is\u00a0\u2212"
+                if surface
+                else "the longer lead is\u00a0+, the stripe is\u00a0\u2212",
             ),
             sketch="electrolytic-chip" if surface else "electrolytic",
         )
@@ -202,7 +207,7 @@ def _header(pins: Mapping[str, str]) -> Cell:
     by_net: dict[str, list[str]] = {}
     for number in sorted(pins, key=int):
         by_net.setdefault(net_words(pins[number]), []).append(number)
-    words = [f"pins {', '.join(numbers)}: {net}" for net, numbers in by_net.items()]
+    words = [f"{pin_words(numbers)}: {'not connected' if net == OPEN else net}" for net, numbers in by_net.items()]
     negative = "BUS\u2212" in by_net
     stripe = (
         "the cable's coloured stripe goes to pin 1, the negative rail"

@@ -62,6 +62,12 @@ def identifier(text: str) -> str:
     return re.sub(r"[^A-Za-z0-9]+", "_", text)
 
 
+def element(letter: str, ref: str, suffix: str = "") -> str:
+    """An element's name: the reference, behind the letter that ngspice tells kinds by when it has another."""
+    name = identifier(ref) + suffix
+    return name if name.upper().startswith(letter) else letter + name
+
+
 class Nodes:
     """Node names for net names: lower case, letters, digits and underscores, no two the same; 0 V is ``0``."""
 
@@ -118,7 +124,7 @@ def spice_deck(job: Job) -> bytes:
         trim_blocks=True,
         lstrip_blocks=True,
         keep_trailing_newline=True,
-        autoescape=False,  # noqa: S701 - a SPICE deck is not a page
+        autoescape=False,
     )
     environment.filters["number"] = number
     start, stop = step_of(job.spec)
@@ -167,9 +173,7 @@ def _runs(spec: Spec, probes: tuple[Probe, ...]) -> Iterator[Run]:
 def _probe(board: Board, lane: Lane, nodes: Nodes) -> Probe:
     if not lane.output_nets:
         raise ValueError(f"channel {lane.channel} has no output socket to look at")
-    capacitance = sum(
-        1 / sum(1 / board.capacitance(ref).nominal for ref in branch.refs) for branch in lane.branches
-    )
+    capacitance = sum(1 / sum(1 / board.capacitance(ref).nominal for ref in branch.refs) for branch in lane.branches)
     series = sum(board.resistance(ref).nominal for ref in lane.isolating)
     resistances = _positions(board, lane)
     short, middle, long = ((series + r) * capacitance for r in resistances)
@@ -198,7 +202,7 @@ def _positions(board: Board, lane: Lane) -> tuple[float, float, float]:
 def _turned(board: Board, lane: Lane) -> str:
     """The element between the wiper and the end of the track that is in the way."""
     reversed_ = lane.wiring.form in ("reversed", "loose-reversed")
-    return f"{identifier(lane.control)}_{'B' if reversed_ else 'A'}"
+    return element("R", lane.control, "_B" if reversed_ else "_A")
 
 
 def _blocks(board: Board, nodes: Nodes) -> Iterator[tuple[str, tuple[str, ...]]]:
@@ -240,11 +244,11 @@ def _element(board: Board, ref: str, nodes: Nodes, turned: str) -> Iterator[str]
 def _two_ended(board: Board, ref: str, one: str, two: str) -> Iterator[str]:
     name, kind, record = identifier(ref), board.kind(ref), board.record(ref)
     if isinstance(record, Diode):
-        yield f"D{name} {two} {one} DMOD_{identifier(record.key)}"
+        yield f"{element('D', ref)} {two} {one} DMOD_{identifier(record.key)}"
     elif kind == "resistor":
-        yield f"R{name} {one} {two} {number(board.resistance(ref).nominal)}"
+        yield f"{element('R', ref)} {one} {two} {number(board.resistance(ref).nominal)}"
     elif kind == "capacitor":
-        yield f"C{name} {one} {two} {number(board.capacitance(ref).nominal)}"
+        yield f"{element('C', ref)} {one} {two} {number(board.capacitance(ref).nominal)}"
         if isinstance(record, Capacitor) and math.isfinite(record.insulation(record.voltage)):
             yield f"RINS_{name} {one} {two} {number(record.insulation(record.voltage))}"
     else:
@@ -255,13 +259,13 @@ def _control(board: Board, ref: str, nodes: Nodes, turned: str) -> Iterator[str]
     one, wiper, three = (nodes.pin(ref, pin) for pin in ("1", "2", "3"))
     whole = number(board.resistance(ref).nominal)
     if wiper is None and one is not None and three is not None:
-        yield f"R{identifier(ref)} {one} {three} {whole}"
+        yield f"{element('R', ref)} {one} {three} {whole}"
         return
     for letter, left, right in (("A", one, wiper), ("B", wiper, three)):
-        element = f"{identifier(ref)}_{letter}"
+        half = element("R", ref, f"_{letter}")
         if left is not None and right is not None and left != right:
             # a half that nobody turns has all of the track but nothing flows in it, or it is a fixed part
-            yield f"R{element} {left} {right} {whole}" + ("  ; turned below" if element == turned else "")
+            yield f"{half} {left} {right} {whole}" + ("  ; turned below" if half == turned else "")
 
 
 def _package(board: Board, ref: str, nodes: Nodes) -> Iterator[str]:

@@ -17,7 +17,7 @@ from functools import cache
 from modgen.analysis.board import Board
 from modgen.catalogue import Catalogue
 from modgen.netlist.model import Netlist
-from modgen.problems import Place
+from modgen.problems import InputError, Place, Problem
 from modgen.rules.contract import LEVELS, Checked, Context, Finding, Measurement, Report, Rule
 from modgen.spec.model import Spec, Waiver
 
@@ -78,6 +78,16 @@ def discover() -> tuple[Rule, ...]:
                 raise TypeError(f"rule {rules[0].name!r} has subject {rules[0].subject!r} but lives in {subject}/")
             found.append(rules[0]())
     return tuple(sorted(found, key=lambda rule: (SUBJECTS.index(rule.subject), rule.name)))
+
+
+def rule_names() -> tuple[str, ...]:
+    """The name of every rule, sorted."""
+    return tuple(sorted(rule.name for rule in discover()))
+
+
+def subjects() -> dict[str, str]:
+    """The subject of every rule, by its name."""
+    return {rule.name: rule.subject for rule in discover()}
 
 
 def natural(text: str) -> tuple[tuple[int, int | str], ...]:
@@ -170,6 +180,8 @@ def judge(
     ------
     InternalError
         When a rule crashed; the others have run by then.
+    InputError
+        When a value of the netlist that a rule computes with is not a number; all such values, once each.
     """
     chosen = discover() if rules is None else tuple(rules)
     context = Context(
@@ -183,6 +195,7 @@ def judge(
     crashes: list[RuleCrash] = []
     waivers = spec.waive if spec is not None else ()
     ran: list[str] = []
+    problems: set[Problem] = set()
     for rule in sorted(chosen, key=lambda rule: rule.runs_last):
         if rule.needs_spec and spec is None:
             checked[rule.name] = Checked(rule.name, 0, None, "", judged=False, not_judged=NO_SPEC)
@@ -192,6 +205,10 @@ def judge(
             measured = tuple(rule.measure(seen))
             new = [_finding(rule, m) for m in measured if m.fault is not None]
             checked[rule.name] = _checked(rule, measured)
+        except InputError as error:
+            # a value that nobody can read is the netlist's fault, not the rule's
+            problems.update(error.problems)
+            continue
         except Exception as error:
             crashes.append(RuleCrash(rule.name, f"{type(error).__name__}: {error}"))
             checked[rule.name] = Checked(rule.name, 0, None, "", judged=False, not_judged="it crashed")
@@ -201,10 +218,12 @@ def judge(
         findings.extend(new if rule.runs_last else [_waived(finding, waivers) for finding in new])
     report = Report(
         findings=tuple(sorted(findings, key=_order)),
-        checked=tuple(checked[rule.name] for rule in chosen),
+        checked=tuple(checked[rule.name] for rule in chosen if rule.name in checked),
     )
     if crashes:
         raise InternalError(crashes, report)
+    if problems:
+        raise InputError(sorted(problems))
     return report
 
 

@@ -6,7 +6,7 @@ One line does one thing::
     R9 metal-film-0207-100k 1=CH1_IN 2=0V role=terminator
     C1 2=0V                   put a pin of a part that is there on another net
     C1 2=                     leave the pin open
-    C1 film-pp-470n           fit another part in the place of C1
+    C1 film-pp-box-250v-470n           fit another part in the place of C1
     R1 land= value=3k         change what the netlist says of it (value, land pattern, any field)
     add R1 ...                a second part of that reference
     without C1                take it out
@@ -52,16 +52,16 @@ J3 jack-35-switched T=CH1_OUT S=0V role=output-jack channel=1
 D1 1n5819 1=V+ 2=BUS+ role=reverse-polarity
 D2 1n5819 1=BUS- 2=V- role=reverse-polarity
 U1 tl072-dip8 1=CH1_BUF 2=CH1_BUF 3=CH1_A 4=V- 5=CH1_GLIDE 6=CH1_DRIVE 7=CH1_DRIVE 8=V+ role=amplifier
-R1 metal-film-0207-1M 1=CH1_IN 2=0V role=terminator channel=1
+R1 metal-film-0207-1m0 1=CH1_IN 2=0V role=terminator channel=1
 R2 metal-film-0207-10k 1=CH1_IN 2=CH1_A role=input-series channel=1
-R3 metal-film-0207-2.2k 1=CH1_BUF 2=CH1_CTL role=isolating channel=1
-R4 control-16mm-linear-1M 1=CH1_CTL 2=CH1_GLIDE 3=CH1_GLIDE role=glide-control channel=1
-R5 metal-film-0207-1k 1=CH1_DRIVE 2=CH1_OUT role=output-series channel=1
-C1 film-pp-1u 1=CH1_GLIDE 2=0V role=glide-capacitor channel=1
-C2 x7r-radial-100n 1=V+ 2=0V role=decoupling serves=U1
-C3 x7r-radial-100n 1=V- 2=0V role=decoupling serves=U1
-C4 electrolytic-25v-10u 1=V+ 2=0V role=reservoir
-C5 electrolytic-25v-10u 1=0V 2=V- role=reservoir
+R3 metal-film-0207-2k2 1=CH1_BUF 2=CH1_CTL role=isolating channel=1
+R4 control-16mm-linear-1m0 1=CH1_CTL 2=CH1_GLIDE 3=CH1_GLIDE role=glide-control channel=1
+R5 metal-film-0207-1k0 1=CH1_DRIVE 2=CH1_OUT role=output-series channel=1
+C1 film-pp-box-250v-1u0 1=CH1_GLIDE 2=0V role=glide-capacitor channel=1
+C2 x7r-radial-50v-100n 1=V+ 2=0V role=decoupling serves=U1
+C3 x7r-radial-50v-100n 1=V- 2=0V role=decoupling serves=U1
+C4 electrolytic-radial-25v-10u 1=V+ 2=0V role=reservoir
+C5 electrolytic-radial-25v-10u 1=0V 2=V- role=reservoir
 """
 
 #: The same lane on a single supply of 9 V, with signals between 0 V and 5 V.
@@ -74,14 +74,14 @@ J2 jack-35-switched T=CH1_IN TN=0V S=0V role=input-jack channel=1
 J3 jack-35-switched T=CH1_OUT S=0V role=output-jack channel=1
 D1 1n5819 1=V+ 2=BUS+ role=reverse-polarity
 U1 opa2192-soic8 1=CH1_BUF 2=CH1_BUF 3=CH1_A 4=0V 5=CH1_GLIDE 6=CH1_DRIVE 7=CH1_DRIVE 8=V+ role=amplifier
-R1 metal-film-0207-1M 1=CH1_IN 2=0V role=terminator channel=1
+R1 metal-film-0207-1m0 1=CH1_IN 2=0V role=terminator channel=1
 R2 metal-film-0207-10k 1=CH1_IN 2=CH1_A role=input-series channel=1
-R3 metal-film-0207-2.2k 1=CH1_BUF 2=CH1_CTL role=isolating channel=1
-R4 control-16mm-linear-1M 1=CH1_CTL 2=CH1_GLIDE 3=CH1_GLIDE role=glide-control channel=1
-R5 metal-film-0207-1k 1=CH1_DRIVE 2=CH1_OUT role=output-series channel=1
-C1 film-pp-1u 1=CH1_GLIDE 2=0V role=glide-capacitor channel=1
-C2 x7r-radial-100n 1=V+ 2=0V role=decoupling serves=U1
-C3 electrolytic-25v-10u 1=V+ 2=0V role=reservoir
+R3 metal-film-0207-2k2 1=CH1_BUF 2=CH1_CTL role=isolating channel=1
+R4 control-16mm-linear-1m0 1=CH1_CTL 2=CH1_GLIDE 3=CH1_GLIDE role=glide-control channel=1
+R5 metal-film-0207-1k0 1=CH1_DRIVE 2=CH1_OUT role=output-series channel=1
+C1 film-pp-box-250v-1u0 1=CH1_GLIDE 2=0V role=glide-capacitor channel=1
+C2 x7r-radial-50v-100n 1=V+ 2=0V role=decoupling serves=U1
+C3 electrolytic-radial-25v-10u 1=V+ 2=0V role=reservoir
 """
 
 BOARDS = {"lane": LANE, "single": SINGLE}
@@ -114,6 +114,8 @@ SPEC_KEYS = {
     "signal.source": "resistance",
     "signal.load": "resistance",
     "signal.span": "span",
+    "signal.pitch": "flag",
+    "build.amplifier": "word",
     "accuracy.scale": "ratio",
     "accuracy.offset": "voltage",
 }
@@ -286,6 +288,8 @@ def _changed(spec: Spec, text: str) -> Spec:
     if kind == "span":
         low, high = parse_span(value)
         changed = replace(held, low=low, high=high)
+    elif kind == "flag":
+        changed = replace(held, **{name: value == "true"})
     else:
         changed = replace(held, **{name: value if kind == "word" else parse_quantity(value, kind)})
     return replace(spec, **{section: changed})

@@ -3,30 +3,58 @@
 from __future__ import annotations
 
 import heapq
-import math
-from collections.abc import Callable, Iterable
-from dataclasses import dataclass
+from collections.abc import Callable, Collection, Iterable
+from dataclasses import dataclass, replace
 
 from modgen.analysis.board import Board
+from modgen.analysis.model import Headroom
+from modgen.rules.contract import Fault, Measurement
+from modgen.units import format_quantity
 
 #: Pins of the 2x5 power header (design convention; common practice).
 HEADER_NEGATIVE = ("1", "2")
 HEADER_GROUND = ("3", "4", "5", "6", "7", "8")
 HEADER_POSITIVE = ("9", "10")
 
+#: a switched contact: socket, tip net, switch net
+Contact = tuple[str, str, str]
+
+
+#: what stands this near to a limit is on it [-]. Source: the rounding of binary fractions.
+ROUNDING = 1e-9
+
 
 def left(measured: float, limit: float) -> float:
-    """Share of an upper limit that is left [-]; negative beyond it."""
+    """Share of an upper limit that is left [-]; negative beyond it, 0 on it but for rounding.
+
+    Parameters
+    ----------
+    measured
+        What is held against the limit.
+    limit
+        The limit, in the same unit. At or below zero nothing is left of it: -1 for anything above.
+    """
     if limit <= 0:
-        return 0.0 if measured <= limit else -math.inf
-    return 1.0 - measured / limit
+        return 0.0 if measured <= limit else -1.0
+    return settled(1.0 - measured / limit)
 
 
 def above(measured: float, limit: float) -> float:
-    """Share of a measured value that stands above its lower limit [-]; negative below it."""
-    if measured <= 0:
-        return -math.inf if limit > 0 else 0.0
-    return 1.0 - limit / measured
+    """How far a value stands above its lower limit, as a share of the limit [-]; negative below it.
+
+    Parameters
+    ----------
+    measured
+        What is held against the limit.
+    limit
+        The limit, in the same unit and above zero.
+    """
+    return settled(measured / limit - 1.0)
+
+
+def settled(margin: float) -> float:
+    """A margin, or 0 when only rounding keeps it from that."""
+    return 0.0 if abs(margin) < ROUNDING else margin
 
 
 def listed(names: Iterable[str]) -> str:
@@ -56,7 +84,7 @@ def groups(pairs: Iterable[tuple[str, str]]) -> Callable[[str], str]:
     return find
 
 
-def closed_contacts(board: Board) -> tuple[tuple[str, str, str], ...]:
+def closed_contacts(board: Board) -> tuple[Contact, ...]:
     """``(jack, tip net, switch net)`` of every switched contact that joins two nets with nothing plugged in."""
     return tuple(
         (jack.ref, jack.tip, jack.switch)
@@ -72,8 +100,8 @@ def least_path(
     board: Board,
     start: str,
     ends: Iterable[str],
-    contacts: Iterable[tuple[str, str, str]] = (),
-    through: Callable[[str], bool] | None = None,
+    contacts: Iterable[Contact] = (),
+    around: Collection[str] = (),
 ) -> tuple[float, str, tuple[str, ...]] | None:
     """The way of least resistance from a net to one of several, through resistors and controls.
 
@@ -87,8 +115,8 @@ def least_path(
         Nets at which it may end.
     contacts
         Closed jack contacts, as of :func:`closed_contacts`, that may be used at no resistance.
-    through
-        Which nets may be passed on the way; all by default.
+    around
+        Nets that may not be passed on the way, though it may begin or end there.
 
     Returns
     -------
@@ -110,7 +138,7 @@ def least_path(
         done.add(at)
         if at in goals:
             return ohms, at, refs
-        if at != start and through is not None and not through(at):
+        if at != start and at in around:
             continue
         for step in board.between(at, "resistor", "control"):
             if step.net not in done:
@@ -189,6 +217,8 @@ def may_stay_open(board: Board, ref: str, pin: str) -> str:
     The tip switch of a socket that feeds no amplifier input (an output socket) has nothing to normal, and
     the negative pins of the header have nothing to feed on a board whose amplifiers stand on 0 V.
     """
+    if ref not in board.netlist.by_ref:
+        return ""
     kind = board.kind(ref)
     if kind == "jack" and pin == "TN" and not is_input(board, ref):
         return "an output socket normals nothing"
@@ -210,10 +240,56 @@ def is_input(board: Board, ref: str) -> bool:
         return True
     outputs = {s.output for s in board.sections if s.output}
     stop = set(board.supply_nets)
-    path = least_path(board, tip, outputs, through=lambda net: net not in stop)
+    path = least_path(board, tip, outputs, around=stop)
     return path is None
 
 
 def is_polarised(board: Board, ref: str) -> bool:
     """Whether a capacitor has a + end."""
     return board.kind(ref) == "capacitor" and board.polarised(ref)
+
+
+# --- headroom ------------------------------------------------------------------------------------
+
+
+def headroom_measurement(stage: Headroom, fault: Fault) -> Measurement:
+    """What a stage can do against what it must, at its tighter end.
+
+    Parameters
+    ----------
+    stage
+        From :func:`modgen.analysis.headroom.headrooms`.
+    fault
+        What is wrong when it does not fit; ``{needed}``, ``{can}`` and ``{way}`` (up to, down to) in its
+        message are filled in.
+
+    Returns
+    -------
+    Measurement
+        Its margin is the distance to the limit as a share of half the range: of the limit itself, where the
+        range lies evenly about 0 V.
+    """
+    at_top = stage.can_high - stage.needed_high
+    at_bottom = stage.needed_low + stage.allowance - stage.can_low
+    needed, can, distance = (
+        (stage.needed_high, stage.can_high, at_top)
+        if at_top <= at_bottom
+        else (stage.needed_low, stage.can_low, at_bottom)
+    )
+    texts = {
+        "needed": format_quantity(needed, "voltage", 4),
+        "can": format_quantity(can, "voltage", 4),
+        "way": "up to" if at_top <= at_bottom else "down to",
+    }
+    half = (stage.can_high - stage.can_low) / 2
+    margin = settled(distance / half) if half > 0 else -1.0
+    return Measurement(
+        parts=stage.parts,
+        what=f"{stage.stage} {stage.subject}: {texts['needed']} of {texts['can']}",
+        measured=needed,
+        limit=can,
+        unit="V",
+        margin=margin,
+        fault=replace(fault, message=fault.message.format(**texts)) if margin < 0 else None,
+        key="signal.span",
+    )

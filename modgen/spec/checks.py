@@ -86,19 +86,20 @@ def glide(node: Node, stated: dict[str, Any]) -> Iterator[Problem]:
         )
 
 
-def rail_signs(node: Node, name: str, text: str, value: float) -> Problem | None:
+def rail_sign(node: Node, name: str, value: float) -> Problem | None:
     """The commonest slip: a supply with the sign of the other."""
+    text = shown(node.text)
     if name == "rails.negative" and value > 0:
         return node.problem(
-            f"rails.negative is '{shown(text)}', which is positive",
+            f"rails.negative is '{text}', which is positive",
             "the negative supply is written with its sign",
-            f"write -{shown(text).lstrip('+')}, or 0 V on a single supply",
+            f"write -{text.lstrip('+ ')}, or 0 V on a single supply",
         )
     if name == "rails.positive" and value < 0:
         return node.problem(
-            f"rails.positive is '{shown(text)}', which is negative",
-            "the positive supply is written first, the negative one as rails.negative",
-            f"write {shown(text).lstrip('-−').lstrip()}",
+            f"rails.positive is '{text}', which is negative",
+            "the positive supply has no sign; the negative one is rails.negative",
+            f"write {text.lstrip('-− ')}",
         )
     return None
 

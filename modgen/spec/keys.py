@@ -76,7 +76,7 @@ class Key:
         """The description with bounds, choices and condition."""
         parts = [self.says]
         if self.choices:
-            parts.append(" or ".join(self.choices))
+            parts.append(" or ".join((", ".join(self.choices[:-1]), self.choices[-1])))
         elif self.bounds:
             parts.append(self.bounds)
         if self.only:

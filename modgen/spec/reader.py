@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
@@ -23,7 +24,7 @@ from modgen.spec.model import (
 )
 
 #: largest page that is read [byte]; one made by hand has a few hundred
-LARGEST = 200_000
+LARGEST = 100_000
 
 _SECTIONS: dict[str, type] = {
     "rails": Rails,
@@ -114,9 +115,9 @@ class _Reader:
             read = {**read, "low": low, "high": high}
         return model(**read)
 
-    def _section(self, model: type, node: Node, where: str) -> dict[str, Any]:
+    def _section(self, model: type, node: Node, where: str, example: str = "") -> dict[str, Any]:
         """Every key of a section, read or left at its default."""
-        fields = Fields(node, self.problems, where)
+        fields = Fields(node, self.problems, where, example)
         read: dict[str, Any] = {}
         if node.kind != "mapping":
             return dict.fromkeys((name for name, _ in keys_of(model)), None)
@@ -161,7 +162,7 @@ class _Reader:
             if key.kind == "section":
                 assert key.section is not None
                 self._not_blank(node, full, key)
-                return self._section(key.section, node, full)
+                return self._section(key.section, node, full, f"{full}: {key.example}")
             if key.kind == "jacks":
                 return self._jacks(node, full, key, read.get("channels"))
             if key.kind == "waivers":
@@ -171,7 +172,7 @@ class _Reader:
             if full.startswith("rails."):
                 return self._rail(node, full, key)
             return values.read_value(node, full, key)
-        except values.Refused as refused:
+        except values.RefusedError as refused:
             self.problems.extend(refused.problems)
             return None
 
@@ -186,20 +187,12 @@ class _Reader:
             )
 
     def _rail(self, node: Node, full: str, key: Key) -> float:
-        """A supply; the wrong sign has a message of its own."""
-        try:
-            value: float = values.read_value(node, full, key)
-        except values.Refused:
-            for sign in (1.0, -1.0):
-                try:
-                    free = values.quantity(node, full, Key("quantity", key.says, dimension=key.dimension))
-                except values.Refused:
-                    break
-                problem = checks.rail_signs(node, full, node.text, sign * abs(free)) if free * sign > 0 else None
-                if problem:
-                    raise values.Refused(problem) from None
-            raise
-        return value
+        """A supply; the wrong sign has a message of its own, before the bounds."""
+        value = values.quantity(node, full, replace(key, least=None, most=None))
+        problem = checks.rail_sign(node, full, value)
+        if problem:
+            raise values.RefusedError(problem)
+        return values.bounded(node, full, key, value)
 
     def _jacks(self, node: Node, full: str, key: Key, channels: int | None) -> Jacks | None:
         """The total, or inputs and outputs."""
@@ -216,12 +209,13 @@ class _Reader:
                 f"{full}: {key.says}",
                 f"write {full}: {key.example}",
             )
-        total = values.whole(node, full, key)
+        total = values.number(node, full, key)
         if channels is None:
+            values.bounded(node, full, key, total)
             return None
         found = checks.split_jacks(node, total, channels)
         if isinstance(found, Problem):
-            raise values.Refused(found)
+            raise values.RefusedError(found)
         return found
 
     def _waivers(self, node: Node, full: str, key: Key) -> tuple[Waiver, ...]:
@@ -239,7 +233,9 @@ class _Reader:
             )
         found = []
         for number, item in enumerate(node.items, 1):
-            read = self._section(Waiver, item, f"{full}[{number}]")
+            each = f"{full}[{number}]"
+            self.places.append((each, item.place))
+            read = self._section(Waiver, item, each, key.example[1:-1])
             found.append(Waiver(**read, place=item.place))
         return tuple(found)
 

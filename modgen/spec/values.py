@@ -1,7 +1,7 @@
 """One value of the page, by the kind its key has: a node in, a value in base SI units out.
 
 Every reader takes the node, the key's full name and its definition, and returns the value; what cannot be used
-is raised as :class:`Refused` with the problem at the node.
+is raised as :class:`RefusedError` with the problem at the node.
 """
 
 from __future__ import annotations
@@ -20,15 +20,15 @@ from modgen.units import QuantityError, parse_quantity, parse_span
 LONGEST_LIST = 1000
 #: narrowest span of a signal [V]: less is not a control voltage
 NARROWEST_SPAN = 1e-3
-#: a fraction of an octave that is one cent [-]
-CENT = 1.0 / 1200.0
 
-_WHOLE = re.compile(r"0|[1-9][0-9]{0,8}")
-_SIGNED = re.compile(r"[+-]?[0-9]+")
+#: digits of a whole number that are looked at; every bound has fewer
+MOST_DIGITS = 18
+
+_WHOLE = re.compile(r"-?(0|[1-9][0-9]*)")
 _RULE = re.compile(r"[a-z]+(-[a-z]+)*")
 
 
-class Refused(Exception):
+class RefusedError(Exception):
     """A value that cannot be used."""
 
     def __init__(self, *problems: Problem) -> None:
@@ -41,46 +41,48 @@ def read_value(node: Node, name: str, key: Key) -> Any:
 
     Raises
     ------
-    Refused
+    RefusedError
         With every problem of the value.
     """
     return _READERS[key.kind](node, name, key)
 
 
-def refuse(node: Node, what: str, why: str = "", fix: str = "") -> Refused:
+def refuse(node: Node, what: str, why: str = "", fix: str = "") -> RefusedError:
     """A refusal with one problem at the node."""
-    return Refused(node.problem(what, why, fix))
+    return RefusedError(node.problem(what, why, fix))
 
 
 def scalar(node: Node, name: str, key: Key) -> str:
     """The text of a single value that is there."""
-    like = f"write it like this: {name.rpartition('.')[2]}: {key.example or key.default}"
-    if node.kind != "scalar":
-        raise refuse(node, f"{name} is {node}, not a single value", f"{name}: {key.says}", like)
-    if node.blank:
+    if node.kind == "scalar" and not node.blank:
+        return node.text
+    if name.endswith("]"):
+        fix = "write a text, or remove the entry"
+    else:
+        fix = f"write it like this: {name.rpartition('.')[2]}: {key.example or key.default}"
+        if node.blank and not key.required:
+            fix += "; or remove the line"
+    what = f"{name} has no value" if node.blank else f"{name} is {node}, not a single value"
+    raise refuse(node, what, f"{name}: {key.says}", fix)
+
+
+def number(node: Node, name: str, key: Key) -> int:
+    """A whole number in digits, whatever its size; nothing that only some readers of YAML take for one."""
+    text = scalar(node, name, key)
+    if not _WHOLE.fullmatch(text):
         raise refuse(
             node,
-            f"{name} has no value",
-            f"{name}: {key.says}",
-            f"{like}; or remove the line" * (not key.required) or like,
+            f"{name} is '{shown(text)}', not a whole number",
+            f"{name} is a whole number {key.bounds}, in digits",
+            f"write digits only, for instance {key.example or key.default}",
         )
-    return node.text
+    # Python converts only so many digits; past these the sign and the size are all that counts
+    return int(text[:MOST_DIGITS])
 
 
 def whole(node: Node, name: str, key: Key) -> int:
-    """A whole number, in digits; nothing that some reader of YAML takes for one."""
-    text = scalar(node, name, key)
-    why = f"{name} is a whole number {key.bounds}"
-    if _SIGNED.fullmatch(text) and not re.match(r"\+|-?0[0-9]", text):
-        if not _WHOLE.fullmatch(text) or not key.inside(int(text)):
-            raise refuse(node, f"{name} is {shown(text)}, outside its bounds", why, "write a number within the bounds")
-        return int(text)
-    raise refuse(
-        node,
-        f"{name} is '{shown(text)}', not a whole number",
-        why,
-        f"write digits only, for instance {key.example or key.default}",
-    )
+    """A whole number within the bounds of its key."""
+    return int(bounded(node, name, key, number(node, name, key)))
 
 
 def flag(node: Node, name: str, key: Key) -> bool:
@@ -118,12 +120,12 @@ def line(node: Node, name: str, key: Key, longest: int, forbidden: str = "\\") -
             node, f"{name} begins or ends with a blank", f"{name} is '{shown(text)}'", "remove the blanks at its ends"
         )
     if not text:
-        raise refuse(
-            node,
-            f"{name} is an empty text",
-            f"{name}: {key.says}",
-            f"write one, for instance {key.example or key.default}",
+        like = (
+            "write a text, or remove the entry"
+            if name.endswith("]")
+            else f"write one, for instance {key.example or key.default}"
         )
+        raise refuse(node, f"{name} is an empty text", f"{name}: {key.says}", like)
     if len(text) > longest:
         raise refuse(
             node, f"{name} has {len(text)} characters: '{shown(text)}'", f"at most {longest} are allowed", "shorten it"
@@ -134,7 +136,7 @@ def line(node: Node, name: str, key: Key, longest: int, forbidden: str = "\\") -
             raise refuse(
                 node,
                 f"{name} holds {what}: '{shown(text)}'",
-                "backslashes, line breaks and characters that cannot be seen are not safe in every file that is written",
+                "backslashes, line breaks and invisible characters are not safe in every file that is written",
                 "use / between folders" if character == "\\" and key.kind in ("path", "paths") else "remove it",
             )
     return text
@@ -178,9 +180,9 @@ def reason(node: Node, name: str, key: Key) -> str:
 
 
 def path(node: Node, name: str, key: Key) -> str:
-    """A path as written; empty for none."""
+    """A path as written; empty for ``none``. A file of that name is written ``./none``."""
     text = line(node, name, key, LONGEST_PATH)
-    return "" if text == NONE and node.plain else text
+    return "" if text == NONE else text
 
 
 def texts(node: Node, name: str, key: Key) -> tuple[str, ...]:
@@ -202,7 +204,7 @@ def texts(node: Node, name: str, key: Key) -> tuple[str, ...]:
     for number, item in enumerate(node.items, 1):
         try:
             text = _one(item, f"{name}[{number}]", key, longest, forbidden)
-        except Refused as refused:
+        except RefusedError as refused:
             problems.extend(refused.problems)
             continue
         if text in found:
@@ -211,7 +213,7 @@ def texts(node: Node, name: str, key: Key) -> tuple[str, ...]:
             )
         found.append(text)
     if problems:
-        raise Refused(*problems)
+        raise RefusedError(*problems)
     return tuple(found)
 
 
@@ -249,6 +251,13 @@ def scale(node: Node, name: str, key: Key) -> float:
 def offset(node: Node, name: str, key: Key, span: float) -> float:
     """A voltage, or a share of the span [V]."""
     text = scalar(node, name, key)
+    if _in_cents(text):
+        raise refuse(
+            node,
+            f"{name} is '{shown(text)}', a pitch interval",
+            "a constant error is a voltage, whatever it does to the pitch",
+            "write it like 30 mV or 2 %",
+        )
     if text.rstrip().endswith("%"):
         return bounded(node, name, key, _parsed(node, name, text, "ratio") * span)
     return bounded(node, name, key, _parsed(node, name, text, "voltage"))
@@ -261,8 +270,13 @@ def span(node: Node, name: str, key: Key) -> tuple[float, float]:
         low, high = parse_span(text)
     except QuantityError as error:
         raise refuse(node, f"{name}: {error.what}", error.why, error.fix) from None
-    bounded(node, name, key, low)
-    bounded(node, name, key, high)
+    if not (key.inside(low) and key.inside(high)):
+        raise refuse(
+            node,
+            f"{name} is '{shown(text)}', beyond its bounds",
+            f"{name} may lie {key.bounds}",
+            "write a smaller span",
+        )
     if high - low < NARROWEST_SPAN:
         raise refuse(
             node,
@@ -275,14 +289,17 @@ def span(node: Node, name: str, key: Key) -> tuple[float, float]:
 
 def bounded(node: Node, name: str, key: Key, value: float) -> float:
     """The value, when it keeps the bounds of its key."""
-    if key.inside(value):
+    if key.inside(value) or key.least is None or key.most is None:
         return value
-    raise refuse(
-        node,
-        f"{name} is '{shown(node.text)}', outside its bounds",
-        f"{name} may be {key.bounds}",
-        "write a value within the bounds",
-    )
+    low, high = key.bound(key.least), key.bound(key.most)
+    text = shown(node.text) if key.kind in ("whole", "jacks") else f"'{shown(node.text)}'"
+    if value > key.most:
+        outside, fix = f"above {high}", f"write {high} or less"
+    elif key.above:
+        outside, fix = f"not above {low}", f"write more than {low}"
+    else:
+        outside, fix = f"below {low}", f"write {low} or more"
+    raise refuse(node, f"{name} is {text}, {outside}", f"{name} may be {key.bounds}", fix)
 
 
 def _in_cents(text: str) -> bool:

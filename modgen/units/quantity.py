@@ -66,12 +66,8 @@ _KINDS: Mapping[str, _Kind] = MappingProxyType(
             point="F",
             code="pnµm",
         ),
-        "voltage": _Kind(
-            "a voltage", "V", ("V",), "nµmk", ("n", "µ", "m", "", "k"), "12 V", signed=True, point="V"
-        ),
-        "current": _Kind(
-            "a current", "A", ("A",), "fpnµmk", ("f", "p", "n", "µ", "m", ""), "20 mA", signed=True
-        ),
+        "voltage": _Kind("a voltage", "V", ("V",), "nµmk", ("n", "µ", "m", "", "k"), "12 V", signed=True, point="V"),
+        "current": _Kind("a current", "A", ("A",), "fpnµmk", ("f", "p", "n", "µ", "m", ""), "20 mA", signed=True),
         "time": _Kind("a time", "s", ("s",), "pnµm", ("p", "n", "µ", "m", ""), "5 ms"),
         "ratio": _Kind("a ratio", "%", ("%",), "", ("",), "5 %", signed=True),
         "pitch": _Kind("a pitch interval", "cents", ("cents", "cent"), "", ("",), "5 cents", signed=True),
@@ -89,12 +85,8 @@ _SAME = str.maketrans(
     # micro: Greek mu; ohm: the ohm sign; minus: the minus sign
     {"\u03bc": "µ", "\u2126": "Ω", "\u2212": "-", **dict.fromkeys(_SPACES, " ")}
 )
-_PLAIN = re.compile(
-    r"(?P<number>[+-]?(?:[0-9]+(?:\.[0-9]+)?|\.[0-9]+)(?:[eE][+-]?[0-9]+)?) *(?P<unit>[^0-9.\s]*)"
-)
-_CODE = re.compile(
-    r"(?P<sign>[+-]?)(?P<whole>[0-9]*)(?P<letter>[^0-9.,+\- ])(?P<part>[0-9]+) *(?P<unit>[^0-9.\s]*)"
-)
+_PLAIN = re.compile(r"(?P<number>[+-]?(?:[0-9]+(?:\.[0-9]+)?|\.[0-9]+)(?:[eE][+-]?[0-9]+)?) *(?P<unit>[^0-9.\s]*)")
+_CODE = re.compile(r"(?P<sign>[+-]?)(?P<whole>[0-9]*)(?P<letter>[^0-9.,+\- ])(?P<part>[0-9]+) *(?P<unit>[^0-9.\s]*)")
 _VALUE = re.compile(r"([+-]?[0-9]+(?:\.[0-9]+)?)([fpnuµmkMGT]?)")
 
 
@@ -342,9 +334,7 @@ def _clean(text: str, how: _Kind) -> str:
     """The text with one spelling of every sign, or an error for what no notation has."""
     clean = text.translate(_SAME).strip()
     if not clean:
-        raise QuantityError(
-            f"{text!r} is empty", f"{how.article} is needed here", f"write it like {how.example}"
-        )
+        raise QuantityError(f"{text!r} is empty", f"{how.article} is needed here", f"write it like {how.example}")
     if len(clean) > LONGEST_TEXT:
         raise QuantityError(
             f"{_shown(text)} is too long for {how.article}",
@@ -405,9 +395,7 @@ def _unit(text: str, unit: str, kind: str, number: str) -> int:
                 )
     for other, its in _KINDS.items():
         if other != kind and any(
-            unit == prefix + spelling
-            for spelling in its.spellings
-            for prefix in ("", *_prefixes(its.prefixes))
+            unit == prefix + spelling for spelling in its.spellings for prefix in ("", *_prefixes(its.prefixes))
         ):
             raise QuantityError(
                 f"{text!r} is {its.article}, not {how.article}",

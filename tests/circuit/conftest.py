@@ -205,9 +205,7 @@ class Maker:
             self.put("C", "10u", "reservoir", "10u", p1="0V", p2="V-")
         negative = "" if self.single else "BUS-"
         nets = [negative] * 2 + ["0V"] * 6 + ["BUS+"] * 2
-        self.put(
-            "J", "header", "power-header", "2x5", **{f"p{k}": net for k, net in enumerate(nets, start=1)}
-        )
+        self.put("J", "header", "power-header", "2x5", **{f"p{k}": net for k, net in enumerate(nets, start=1)})
 
 
 def make_design(

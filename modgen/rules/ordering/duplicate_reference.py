@@ -14,7 +14,8 @@ class DuplicateReference(Rule):
     Checks:
         Every reference of the netlist, against all others; the parts' values are named in the message.
     Matters:
-        With two parts called R7 nobody can tell which value goes where, and nets that name R7 join both.
+        With two parts called R7 nobody can tell which value goes where, and nets that name R7 join
+        both.
     Fails:
         start from: lane
         add R1 metal-film-100k 1=CH1_IN 2=0V

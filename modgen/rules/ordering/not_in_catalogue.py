@@ -13,8 +13,8 @@ class NotInCatalogue(Rule):
     Checks:
         The field ``part`` of every part is a key of the catalogue.
     Matters:
-        Without a record no rating, pin or price of the part is known: every other rule passes over it, and it
-        cannot be ordered.
+        Without a record no rating, pin or price of the part is known: every other rule passes over it,
+        and it cannot be ordered.
     Fails:
         start from: lane
         R1 part=left-over-from-a-drawer

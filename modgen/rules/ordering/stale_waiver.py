@@ -11,8 +11,8 @@ class StaleWaiver(Rule):
     """Every waiver of the spec waives something, and names a rule that exists.
 
     Checks:
-        Each entry under ``waive``: its rule exists, and at least one finding of that rule is on its parts (or
-        anywhere, when it names none). Runs after all other rules.
+        Each entry under ``waive``: its rule exists, and at least one finding of that rule is on its
+        parts (or anywhere, when it names none). Runs after all other rules.
     Matters:
         A waiver left behind hides the next fault of that kind before anybody has looked at it.
     Fails:
@@ -20,8 +20,8 @@ class StaleWaiver(Rule):
         spec: waive idle-amplifier U1
     Passes:
         start from: lane
-        without J2
-        spec: waive unconnected-pin
+        J2 TN=
+        spec: waive unconnected-pin J2
     Limits:
         A waiver of a rule that was not run is not judged. A stale waiver cannot be waived.
     References:
@@ -50,7 +50,7 @@ class StaleWaiver(Rule):
                     "it waives nothing, so the finding that was meant still stands",
                     f"write {near!r}" if near else "take a name from the list that 'modgen rules' prints",
                 )
-            elif waiver.rule in context.ran and not count:
+            elif waiver.rule in (*context.ran, self.name) and not count:
                 fault = Fault(
                     f"the waiver of {waiver.rule}{on} waives nothing",
                     "left in the spec it would hide the next finding of that kind",

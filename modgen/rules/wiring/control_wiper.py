@@ -11,10 +11,12 @@ class ControlWiper(Rule):
     """Every control is a rheostat with its wiper tied to one end.
 
     Checks:
-        The wiper of each control is connected, is tied to exactly one end, and the track lies between two nets.
+        The wiper of each control is connected, is tied to exactly one end, and the track lies between
+        two nets.
     Matters:
-        A wiper lifts for moments in every worn or dirty control. Tied to an end, the whole track stays in the way and
-        the glide is slow for that moment; left alone, the path opens and the output jumps or drifts.
+        A wiper lifts for moments in every worn or dirty control. Tied to an end, the whole track stays
+        in the way and the glide is slow for that moment; left alone, the path opens and the output
+        jumps or drifts.
     Fails:
         start from: lane
         R4 3=

@@ -4,33 +4,38 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
+from modgen.analysis.board import Board
 from modgen.rules.contract import Context, Fault, Measurement, Rule
-from modgen.rules.support import closed_contacts, ground_nets, least_path, rails
+from modgen.rules.support import Contact, closed_contacts, ground_nets, least_path, listed, rails
 from modgen.units import format_quantity
+
+ALWAYS = "whatever is plugged in"
 
 
 class FloatingInput(Rule):
     """Every amplifier input has a DC path to 0 V, a rail or an amplifier output, whatever is plugged in.
 
     Checks:
-        For each input of each section, the way of least resistance through resistors and controls to 0 V, a rail or
-        an output, in every state of the sockets. A plug opens the socket's switch contact, and a cable that is open
-        at its far end brings nothing; a contact can only add paths, so with n sockets the 2^n states need not be
-        tried: an input that is held with all contacts open is held in all of them, and one that is not
-        held then floats at least in that state. An output does not hold the non-inverting input of its own section.
+        For each input of each section, the way of least resistance through resistors and controls to 0
+        V, a rail or an output, in every state of the sockets. A plug opens the socket's switch contact,
+        and a cable that is open at its far end brings nothing; a contact can only add paths, so with n
+        sockets the 2^n states need not be tried: an input that is held with all contacts open is held
+        in all of them, and one that is not held then floats at least in that state. An output does not
+        hold the non-inverting input of its own section.
     Matters:
-        Without a path for its bias current an input drifts to a rail, takes the output with it, and picks up hum;
-        the module seems to work until a cable is pulled.
+        Without a path for its bias current an input drifts to a rail, takes the output with it, and
+        picks up hum; the module seems to work until a cable is pulled.
     Fails:
         start from: lane
         without R1
     Passes:
         start from: lane
     Limits:
-        Takes a wiper to touch its track; diodes and capacitors do not count as paths. Does not judge how large the
-        resistance of the path may be: that is the offset budget's.
+        Takes a wiper to touch its track; diodes and capacitors do not count as paths. Does not judge
+        how large the resistance of the path may be: that is the offset budget's.
     References:
-        Bias current paths of operational amplifiers: common practice, in every maker's application notes (from memory).
+        Bias current paths of operational amplifiers: common practice, in every maker's application
+        notes (from memory).
     """
 
     name = "floating-input"
@@ -57,9 +62,10 @@ class FloatingInput(Rule):
                         ),
                     )
                     continue
-                own = {section.output} if kind == "non-inverting" else set()
+                # what an output only feeds back to its own non-inverting input defines nothing
+                own = {section.output} if kind == "non-inverting" and section.output else set()
                 ends = fixed | {out for out in outputs if out not in own}
-                path = least_path(board, net, ends)
+                path = least_path(board, net, ends, around=own)
                 if path is not None:
                     ohms, end, refs = path
                     by = f"through {', '.join(refs)} " if refs else ""
@@ -71,13 +77,9 @@ class FloatingInput(Rule):
                         nets=(net,),
                     )
                     continue
-                closed = least_path(board, net, ends, contacts)
-                if closed is None:
-                    state = "whatever is plugged in"
-                    fix = f"connect {net} to 0 V through a resistor"
-                else:
-                    jacks = [ref for ref in closed[2] if board.kind(ref) == "jack"]
-                    state = f"when an open cable is plugged into {' or '.join(jacks)}"
+                state = floating_state(board, net, ends, own, contacts)
+                fix = f"connect {net} to 0 V through a resistor"
+                if state != ALWAYS:
                     fix = "connect the socket's tip to 0 V through a resistor of its own"
                 yield Measurement(
                     parts=(section.package,),
@@ -89,3 +91,28 @@ class FloatingInput(Rule):
                         fix,
                     ),
                 )
+
+
+def floating_state(board: Board, net: str, ends: set[str], around: set[str], contacts: tuple[Contact, ...]) -> str:
+    """In which states of the sockets a net that hangs on closed contacts floats, in words.
+
+    The contacts of some sockets hold it; it floats as soon as none of them is closed. Named are the
+    sockets each of which alone makes it float, else a smallest set that does so together.
+    """
+    if least_path(board, net, ends, contacts, around) is None:
+        return ALWAYS
+    jacks = list(dict.fromkeys(ref for ref, _, _ in contacts))
+
+    def floats(opened: list[str]) -> bool:
+        closed = [contact for contact in contacts if contact[0] not in opened]
+        return least_path(board, net, ends, closed, around) is None
+
+    alone = [ref for ref in jacks if floats([ref])]
+    if alone:
+        return f"when an open cable is plugged into {' or '.join(alone)}"
+    together = list(jacks)
+    for ref in jacks:
+        fewer = [other for other in together if other != ref]
+        if floats(fewer):
+            together = fewer
+    return f"when open cables are plugged into {listed(together)} together"

@@ -13,8 +13,9 @@ class IdleAmplifier(Rule):
     """Every unused section is a follower of 0 V.
 
     Checks:
-        Each section whose output leads to nothing but itself: its output is tied to its inverting input, and its
-        non-inverting input to 0 V, straight or through a resistor (through a resistor where the type wants that).
+        Each section whose output leads to nothing but itself: its output is tied to its inverting
+        input, and its non-inverting input to 0 V, straight or through a resistor (through a resistor
+        where the type wants that).
     Matters:
         An open section sits at a rail or oscillates, heats its package and couples into its neighbours.
     Fails:
@@ -23,9 +24,11 @@ class IdleAmplifier(Rule):
     Passes:
         start from: lane
     Limits:
-        A section that drives some part is in use, whatever the part is for. Followers of a mid-rail are not known.
+        A section that drives some part is in use, whatever the part is for. Followers of a mid-rail are
+        not known.
     References:
-        Texas Instruments SLOA277B, section 7.1 (unused amplifiers: follower to 0 V, through a resistor for some types).
+        Texas Instruments SLOA277B, section 7.1 (unused amplifiers: follower to 0 V, through a resistor
+        for some types).
     """
 
     name = "idle-amplifier"

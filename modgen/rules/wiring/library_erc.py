@@ -15,17 +15,19 @@ class LibraryErc(Rule):
     """The electrical rules check of the circuit library has nothing to say.
 
     Checks:
-        Every message that the library's own check left while the circuit was built; its errors are errors here,
-        its warnings warnings.
+        Every message that the library's own check left while the circuit was built; its errors are
+        errors here, its warnings warnings.
     Matters:
-        It knows the pin kinds of the library parts and sees conflicts of drivers by other means than our own rules.
+        It knows the pin kinds of the library parts and sees conflicts of drivers by other means than
+        our own rules.
     Fails:
         start from: lane
         library: error Pin conflict on net CH1_BUF, OUTPUT pin 1/1 of U1 <==> OUTPUT pin 7/7 of U1
     Passes:
         start from: lane
     Limits:
-        Has nothing to report on a netlist that was read from a file: the check runs only where a circuit is built.
+        Has nothing to report on a netlist that was read from a file: the check runs only where a
+        circuit is built.
     References:
         The circuit library's documentation, electrical rules checking.
     """

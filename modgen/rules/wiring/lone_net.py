@@ -16,8 +16,8 @@ class LoneNet(Rule):
     """Every net has at least two pins.
 
     Checks:
-        The number of pins of each net; the nearest other net name is given, for a net with one pin is often a
-        misspelt one.
+        The number of pins of each net; the nearest other net name is given, for a net with one pin is
+        often a misspelt one.
     Matters:
         Two names for what was meant as one net leave an open circuit that no part shows.
     Fails:
@@ -26,8 +26,8 @@ class LoneNet(Rule):
     Passes:
         start from: lane
     Limits:
-        A misspelt name with two pins on it passes here; the parts behind it show as floating or idle. The open
-        tip switch of an output socket and unused header pins are allowed a net of their own.
+        A misspelt name with two pins on it passes here; the parts behind it show as floating or idle.
+        The open tip switch of an output socket and unused header pins are allowed a net of their own.
     References:
         Common practice: the single-pin-net check of every layout editor.
     """

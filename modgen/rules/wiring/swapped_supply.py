@@ -13,11 +13,13 @@ class SwappedSupply(Rule):
     """The supply pins of every package are on the right rails, behind the protection.
 
     Checks:
-        The rails are traced from the power header through the diodes; each package has its positive supply pin on
-        the positive rail and its negative one on the negative rail, or on 0 V where there is none.
+        The rails are traced from the power header through the diodes; each package has its positive
+        supply pin on the positive rail and its negative one on the negative rail, or on 0 V where there
+        is none.
     Matters:
-        Fed the wrong way round, a package conducts from rail to rail through its substrate and is destroyed at once.
-        Dual and quad packages have their supply pins at different corners, so the fault is easily drawn.
+        Fed the wrong way round, a package conducts from rail to rail through its substrate and is
+        destroyed at once. Dual and quad packages have their supply pins at different corners, so the
+        fault is easily drawn.
     Fails:
         start from: lane
         U1 4=V+ 8=V-
@@ -52,13 +54,14 @@ class SwappedSupply(Rule):
                 net = board.net(ref, pin)
                 fault = None
                 if net not in wanted:
-                    where = f"on net {net}" if net else "on no net"
-                    if net in wrong:
+                    if net is None:
+                        what = f"the {word} supply pin {pin} of {ref} is on no net"
+                    elif net in wrong:
                         what = f"the {word} supply pin {pin} of {ref} is on {net}, the rail of the other supply pin"
                     elif net in buses:
                         what = f"the {word} supply pin {pin} of {ref} is on {net}, ahead of the protection"
                     else:
-                        what = f"the {word} supply pin {pin} of {ref} is {where}, which is not its rail"
+                        what = f"the {word} supply pin {pin} of {ref} is on net {net}, which is not its rail"
                     fault = Fault(
                         what,
                         "a package that is fed the wrong way round conducts from rail to rail and is destroyed"

@@ -16,17 +16,19 @@ class TiedOutputs(Rule):
     """No two amplifier outputs are wired together, in no state of the sockets.
 
     Checks:
-        How many outputs drive each node, first by the wires alone, then with every switch contact closed as it is
-        when nothing is plugged in.
+        How many outputs drive each node, first by the wires alone, then with every switch contact
+        closed as it is when nothing is plugged in.
     Matters:
-        Two outputs on one node push their short-circuit currents into each other as soon as they differ.
+        Two outputs on one node push their short-circuit currents into each other as soon as they
+        differ.
     Fails:
         start from: lane
         U1 7=CH1_BUF
     Passes:
         start from: lane
     Limits:
-        Outputs that meet behind a resistor each are not seen, rightly. Header pins and rails are other rules'.
+        Outputs that meet behind a resistor each are not seen, rightly. Header pins and rails are other
+        rules'.
     References:
         Common practice: the driver-conflict check of every schematic editor.
     """

@@ -12,9 +12,9 @@ class UnconnectedPin(Rule):
     """Every pin that the catalogue lists is on a net with another pin.
 
     Checks:
-        Every pin of every part: the catalogue record's, or the netlist's own list for a part that is not in
-        the catalogue. Two kinds may stay open: the tip switch of an output socket, and the header pins of a
-        negative rail that the board does not use.
+        Every pin of every part: the catalogue record's, or the netlist's own list for a part that is
+        not in the catalogue. Two kinds may stay open: the tip switch of an output socket, and the
+        header pins of a negative rail that the board does not use.
     Matters:
         A part with an open pin is not in the circuit, however well it is placed.
     Fails:
@@ -40,7 +40,7 @@ class UnconnectedPin(Rule):
             for pin in board.pins(ref):
                 net = board.net(ref, pin)
                 pins = board.on(net) if net else ()
-                excuse = may_stay_open(board, ref, pin)
+                excuse = may_stay_open(board, ref, pin) if len(pins) < 2 else ""
                 fault = None
                 label = names.get(pin, "")
                 label = f"pin {pin} ({label})" if label and label != pin else f"pin {pin}"

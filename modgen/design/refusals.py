@@ -1,0 +1,143 @@
+"""When nothing fits: which bound blocks, the nearest that can be had, and what to change."""
+
+from __future__ import annotations
+
+import difflib
+from collections.abc import Iterable, Sequence
+
+from modgen.catalogue import Catalogue
+from modgen.catalogue.records import Amplifier, Capacitor
+from modgen.design.network import Grid, Room
+from modgen.problems import InputError, Problem
+from modgen.spec.model import Spec
+from modgen.units import format_quantity
+
+
+def refusal(spec: Spec, key: str, what: str, why: str, fix: str) -> InputError:
+    """One problem at a key of the spec."""
+    return InputError([Problem(spec.place(key), what, why, fix)])
+
+
+def _hint(name: str, known: Iterable[str]) -> str:
+    near = difflib.get_close_matches(name, sorted(known), 1)
+    return f"did you mean '{near[0]}'? " if near else ""
+
+
+def _list(heading: str, reasons: Sequence[tuple[str, str]]) -> str:
+    """A heading and one reason a line, set under the message's own indent."""
+    if len(reasons) == 1:
+        return " ".join(reasons[0])
+    return heading + "".join(f"\n         {name} {reason}" for name, reason in reasons)
+
+
+def unknown_amplifier(spec: Spec, known: Iterable[str]) -> InputError:
+    """The asked type is not in the catalogue."""
+    asked = spec.build.amplifier
+    fix = f"{_hint(asked, known)}`modgen catalogue amplifier` lists them; build.catalogue adds a file of your own"
+    return refusal(spec, "build.amplifier", f"amplifier '{asked}' is not in the catalogue", "", fix)
+
+
+def wrong_mount(spec: Spec, forms: Iterable[Amplifier]) -> InputError:
+    """The asked type is not sold for the asked mounting."""
+    return refusal(
+        spec,
+        "build.amplifier",
+        f"amplifier '{spec.build.amplifier}' is not sold for {spec.build.mount} mounting",
+        "its forms in the catalogue are " + ", ".join(sorted(a.key for a in forms)),
+        "choose another type, or the other mount",
+    )
+
+
+def no_control(spec: Spec, why: str) -> InputError:
+    """No control has the taper, or none stands the step."""
+    fix = "ask for another taper, a smaller span, or add a control with build.catalogue"
+    return refusal(spec, "glide.taper", "no control can be used", why, fix)
+
+
+def no_capacitor(spec: Spec, catalogue: Catalogue, refused: dict[str, str]) -> InputError:
+    """No capacitor may stand in the glide position."""
+    asked = spec.build.capacitor
+    names = {c.family for c in catalogue.of(Capacitor)} | {c.dielectric for c in catalogue.of(Capacitor)}
+    if asked != "auto" and asked not in names:
+        fix = f"{_hint(asked, names)}the families are {', '.join(sorted(names))}"
+        return refusal(spec, "build.capacitor", f"capacitor family '{asked}' is not in the catalogue", "", fix)
+    kind = "capacitor" if asked == "auto" else asked
+    what = f"no {kind} in the catalogue can be the glide capacitor"
+    why = _list("those there are cannot stand there:", sorted(refused.items()))
+    why = why if refused else f"none is made for {spec.build.mount} mounting"
+    return refusal(spec, "build.capacitor", what, why, "leave build.capacitor at auto, or name a film or C0G family")
+
+
+def network_fault(grid: Grid, room: Room) -> str:
+    """Why no network suits one amplifier type."""
+    able = grid.isolating >= room.isolating
+    if not able.any():
+        return "no capacitor and control in the catalogue span the glide range with it"
+    offset = float((grid.leak + room.bias * grid.through)[able].min())
+    if offset > room.offset:
+        return (
+            f"its bias of up to {format_quantity(room.bias, 'current')} and the capacitor's leakage through the control "
+            f"are an offset of {format_quantity(offset, 'voltage')} at least; "
+            f"{format_quantity(max(room.offset, 0.0), 'voltage')} of the budget are left"
+        )
+    return (
+        f"the capacitor's insulation costs {1200 * float(grid.scale[able].min()):.3g} cents per octave at least; "
+        f"{1200 * max(room.scale, 0.0):.3g} of the budget are left"
+    )
+
+
+def no_amplifier(spec: Spec, refused: Sequence[tuple[str, str]]) -> InputError:
+    """No type can do it, whatever the glide network."""
+    named = spec.build.amplifier != "auto"
+    what = (
+        f"amplifier '{spec.build.amplifier}' does not work in this module"
+        if named
+        else "no amplifier in the catalogue works on these rails with this signal"
+    )
+    fix = "change the rails, the signal's span, the accuracy budget or the amplifier so that one of these reasons falls away"
+    return refusal(spec, "build.amplifier" if named else "rails", what, _list("every type is refused:", refused), fix)
+
+
+def no_network(spec: Spec, grid: Grid, room: Room, refused: Sequence[tuple[str, str]]) -> InputError:
+    """Some type would do, but no network reaches the range or keeps the budgets with it."""
+    if (grid.isolating >= room.isolating).any():
+        stated = dict(spec.places)
+        key = next((k for k in ("accuracy", "build.capacitor", "build.amplifier") if k in stated), "glide.longest")
+        return refusal(
+            spec,
+            key,
+            "the accuracy budget cannot be kept over the glide range",
+            _list("every type is refused:", refused),
+            "allow more error, ask for a shorter longest glide, or another amplifier or capacitor",
+        )
+    longest, shortest = grid.nearest(room)
+    glide = spec.glide
+    reach = []
+    if longest is not None and longest > glide.shortest:
+        reach.append(f"{_time(glide.shortest)} to {_time(longest)}")
+    if shortest is not None and shortest < glide.longest:
+        reach.append(f"{_time(shortest)} to {_time(glide.longest)}")
+    if longest is None and shortest is None:
+        blocks = "neither end can be reached"
+    elif longest is None:
+        blocks = "the shortest glide blocks: no capacitor is small enough for any control and resistor"
+    elif shortest is None:
+        blocks = "the longest glide blocks: no capacitor is large enough for any control"
+    else:
+        blocks = (
+            "the two together block: the range of one control goes from what is left at its end and the isolating "
+            f"resistor ({format_quantity(room.isolating, 'resistance')} at least, for the driving amplifier) to its total"
+        )
+    cover = "guaranteed over tolerance" if glide.cover == "worst-case" else "nominally"
+    asked = f"{_time(glide.shortest)} to {_time(glide.longest)}"
+    return refusal(
+        spec,
+        "glide.longest",
+        f"a glide of {asked} ({glide.measure}) cannot be had {cover} from the catalogue",
+        blocks + (f"; the nearest that can be had: {' or '.join(reach)}" if reach else ""),
+        "change glide.shortest or glide.longest to a range that can be had, or add parts with build.catalogue",
+    )
+
+
+def _time(value: float) -> str:
+    return format_quantity(value, "time")

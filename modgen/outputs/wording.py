@@ -1,0 +1,227 @@
+"""Words, numbers and references as they stand on pages."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from modgen.outputs import bom
+from modgen.units import format_quantity
+
+if TYPE_CHECKING:
+    from modgen.rules.contract import Report
+
+#: The verdict names no more errors than this one by one.
+MOST_STANDING = 12
+
+#: What stands in a table where there is nothing to say.
+NOTHING = "–"
+
+_NO_BREAK = "\u00a0"
+
+
+def quantity(value: float, kind: str, digits: int = 3) -> str:
+    """A quantity as it stands on a page: a true minus sign, and no line break before the unit.
+
+    Parameters
+    ----------
+    value
+        In base SI units; a ratio as a fraction, an interval of pitch in volts. [SI]
+    kind
+        One of :data:`modgen.units.UNITS`. [-]
+    digits
+        Most significant digits. [-]
+
+    Returns
+    -------
+    str
+        ``−12 V``, ``4.7 kΩ``.
+    """
+    return format_quantity(value, kind, digits).replace("-", "\u2212").replace(" ", _NO_BREAK)
+
+
+def signed(value: float, kind: str, digits: int = 3) -> str:
+    """The same with a plus sign when positive.
+
+    Parameters
+    ----------
+    value
+        In base SI units. [SI]
+    kind
+        One of :data:`modgen.units.UNITS`. [-]
+    digits
+        Most significant digits. [-]
+
+    Returns
+    -------
+    str
+        ``+12 V``, ``0 V``, ``−12 V``.
+    """
+    return ("+" if value > 0 else "") + quantity(value, kind, digits)
+
+
+def percent(share: float, digits: int = 3) -> str:
+    """A share of one as per cent.
+
+    Parameters
+    ----------
+    share
+        1.0 is the whole. [-]
+    digits
+        Most significant digits. [-]
+
+    Returns
+    -------
+    str
+        ``63.2 %``.
+    """
+    return quantity(share, "ratio", digits)
+
+
+def natural(text: str) -> tuple[tuple[int, int, str], ...]:
+    """A sort key that puts R2 before R10.
+
+    Parameters
+    ----------
+    text
+        A reference or a name. [-]
+
+    Returns
+    -------
+    tuple
+        Comparable with that of any other text.
+    """
+    return tuple((1, int(piece), "") if piece.isdecimal() else (0, 0, piece) for piece in re.findall(r"\d+|\D+", text))
+
+
+def short_ranges(refs: Iterable[str]) -> str:
+    """References in as few words as possible, as on the parts list but with a true range dash.
+
+    Parameters
+    ----------
+    refs
+        References, in any order. [-]
+
+    Returns
+    -------
+    str
+        ``R1–R4, R7``.
+
+    Examples
+    --------
+    >>> short_ranges(["R7", "R2", "R1", "R3"])
+    'R1–R3, R7'
+    """
+    return bom.short_ranges(set(refs)).replace("-", "\u2013")
+
+
+def pin_words(numbers: Iterable[str]) -> str:
+    """Pin numbers of one part in words, three or more in a row as a range.
+
+    Parameters
+    ----------
+    numbers
+        Pin numbers, in any order. [-]
+
+    Returns
+    -------
+    str
+        ``pin 4``, ``pins 1, 2``, ``pins 3 to 8``.
+
+    Examples
+    --------
+    >>> pin_words(["8", "3", "4", "5", "6", "7"]), pin_words(["10", "9"])
+    ('pins 3 to 8', 'pins 9, 10')
+    """
+    ordered = sorted(set(numbers), key=natural)
+    text = bom.short_ranges(f"P{number}" for number in ordered).replace("P", "").replace("-", " to ")
+    return f"{'pin' if len(ordered) == 1 else 'pins'} {text}"
+
+
+def plural(count: int, word: str) -> str:
+    """A count with its word.
+
+    Parameters
+    ----------
+    count
+        How many. [-]
+    word
+        In the singular. [-]
+
+    Returns
+    -------
+    str
+        ``no errors``, ``1 error``, ``2 errors``.
+    """
+    return f"{count or 'no'} {word}" + ("" if count == 1 else "s")
+
+
+def chosen(items: Sequence[str], last: str = "and") -> str:
+    """A list in words.
+
+    Parameters
+    ----------
+    items
+        What is listed. [-]
+    last
+        The word before the last item. [-]
+
+    Returns
+    -------
+    str
+        ``a, b and c``.
+    """
+    if len(items) < 2:
+        return "".join(items)
+    return f"{', '.join(items[:-1])} {last} {items[-1]}"
+
+
+@dataclass(frozen=True)
+class Verdict:
+    """Whether the module may be ordered, and why."""
+
+    cleared: bool
+    headline: str
+    reason: str
+    #: the errors that stand, one line each
+    standing: tuple[str, ...]
+
+
+def verdict(report: Report) -> Verdict:
+    """The verdict on a module in words.
+
+    Parameters
+    ----------
+    report
+        What the rules found. [-]
+
+    Returns
+    -------
+    Verdict
+        With the count of every level and of what was looked at.
+    """
+    counts = {
+        level: sum(1 for f in report.findings if f.level == level and not f.waived)
+        for level in ("error", "warning", "note")
+    }
+    waived = sum(1 for f in report.findings if f.waived)
+    instances = sum(c.instances for c in report.checked if c.judged)
+    judged = sum(1 for c in report.checked if c.judged)
+    skipped = len(report.checked) - judged
+    reason = ", ".join(plural(counts[level], level) for level in counts)
+    reason += (
+        f" and {plural(waived, 'waived finding')}; {plural(judged, 'rule')} looked at {plural(instances, 'instance')}"
+    )
+    if skipped:
+        reason += f", {plural(skipped, 'rule')} could not be judged"
+    standing = tuple(
+        f"{short_ranges(f.parts)}: {f.message}" if f.parts else f.message
+        for f in report.findings
+        if f.level == "error" and not f.waived
+    )
+    headline = "Cleared for ordering" if report.cleared else "Not cleared for ordering"
+    if len(standing) > MOST_STANDING:
+        standing = (*standing[:MOST_STANDING], f"and {len(standing) - MOST_STANDING} more, all of them under Findings")
+    return Verdict(report.cleared, headline, reason[0].upper() + reason[1:] + ".", standing)

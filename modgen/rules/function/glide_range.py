@@ -1,0 +1,115 @@
+"""A control that does not reach the glide that is asked for."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from modgen.analysis.board import Lane
+from modgen.analysis.glide import LaneValues, factor_of
+from modgen.rules.contract import Context, Fault, Measurement, Rule
+from modgen.rules.support import above, left
+from modgen.spec.model import Glide
+from modgen.units import format_quantity
+
+
+class GlideRange(Rule):
+    """Every channel's control covers the whole glide range of the spec.
+
+    Checks:
+        For each channel, by the spec's own measure: the glide at the fast end of the control is not
+        longer than the shortest that is asked for, and at the slow end not shorter than the longest;
+        with nominal values, or with every part at the wrong end of its tolerance when the spec says
+        ``cover: worst-case``.
+    Matters:
+        It is what the module is for. What a control leaves at its end of travel often sets the shortest
+        glide, and its tolerance the longest.
+    Fails:
+        start from: lane
+        C1 film-pp-box-63v-100n
+    Passes:
+        start from: lane
+    Limits:
+        Finds lanes by structure: one buffer, one control and resistors, capacitors to 0 V, one buffer.
+        Slew limits of the amplifiers and loss of capacitance under bias are not counted.
+    References:
+        IEEE Std 181, transition duration 10 % to 90 %: ln 9 times the time constant.
+    """
+
+    name = "glide-range"
+    subject = "function"
+    needs_spec = True
+
+    def measure(self, context: Context) -> Iterator[Measurement]:
+        """Both ends of every channel, and channels that are missing."""
+        board, spec = context.board, context.spec
+        assert spec is not None
+        lanes = {lane.channel: lane for lane in board.channels}
+        factor = factor_of(spec.glide)
+        for channel in sorted({*range(1, spec.channels + 1), *lanes}):
+            lane = lanes.get(channel)
+            if lane is None:
+                yield Measurement(
+                    parts=tuple(ref for ref in board.refs if board.channel(ref) == channel),
+                    what=f"channel {channel}: not found",
+                    fault=Fault(
+                        f"channel {channel} has no glide stage",
+                        "no buffer, control, capacitor to 0 V and second buffer stand in a row for it",
+                        "compare its wiring with that of the other channels, or correct 'channels' in the spec",
+                    ),
+                    key="channels",
+                )
+                continue
+            yield from self._lane(spec.glide, lane, LaneValues.of(board, lane), factor)
+
+    def _lane(self, glide: Glide, lane: Lane, values: LaneValues, factor: float) -> Iterator[Measurement]:
+        parts = (*lane.isolating, lane.control, *lane.capacitors)
+        worst = glide.cover == "worst-case"
+        how = "over tolerance" if worst else "with nominal values"
+
+        def seconds(value: float) -> str:
+            return format_quantity(value, "time", 4)
+
+        fast = values.interval(values.fastest, factor)
+        shortest = fast.high if worst else fast.nominal
+        fault = None
+        margin = left(shortest, glide.shortest)
+        if margin < 0:
+            fault = Fault(
+                f"channel {lane.channel} glides no faster than {seconds(shortest)} {how}; "
+                f"{seconds(glide.shortest)} is asked for",
+                f"that is what {' and '.join((*lane.isolating, 'the end resistance of ' + lane.control))} leave",
+                "take a smaller isolating resistor, a control with less end resistance, or a smaller capacitor",
+            )
+        yield Measurement(
+            parts=parts,
+            what=f"channel {lane.channel} shortest: {seconds(shortest)} of {seconds(glide.shortest)} {how}",
+            measured=shortest,
+            limit=glide.shortest,
+            unit="s",
+            margin=margin,
+            nets=(lane.glide_net,),
+            fault=fault,
+            key="glide.shortest",
+        )
+        slow = values.interval(1 - values.fastest, factor)
+        longest = slow.low if worst else slow.nominal
+        fault = None
+        margin = above(longest, glide.longest)
+        if margin < 0:
+            fault = Fault(
+                f"channel {lane.channel} glides no slower than {seconds(longest)} {how}; "
+                f"{seconds(glide.longest)} is asked for",
+                f"{lane.control} with {' and '.join(lane.capacitors)} reaches no further",
+                "take a larger control or a larger capacitor",
+            )
+        yield Measurement(
+            parts=parts,
+            what=f"channel {lane.channel} longest: {seconds(longest)} where {seconds(glide.longest)} is asked {how}",
+            measured=longest,
+            limit=glide.longest,
+            unit="s",
+            margin=margin,
+            nets=(lane.glide_net,),
+            fault=fault,
+            key="glide.longest",
+        )

@@ -1,0 +1,128 @@
+"""A rail that a header turned round would destroy."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from modgen.analysis.board import Board
+from modgen.analysis.power import rail_powers
+from modgen.catalogue.records import Diode
+from modgen.rules.contract import Context, Fault, Measurement, Rule
+from modgen.rules.support import Rail, left, rails
+from modgen.spec.model import Spec
+from modgen.units import format_quantity
+
+
+class ReversePolarity(Rule):
+    """Each rail has a series diode, the right way round, that bears what it may see.
+
+    Checks:
+        Between the header and what each rail feeds stands a diode; it conducts from the header on the
+        positive rail and towards it on the negative one. With a spec: its reverse voltage against the
+        header turned round while the reservoirs are still charged (both rails together at the high end
+        of their tolerance, twice the rail on a single supply), and its forward current against the
+        greatest steady current of the rail.
+    Matters:
+        The key of a shrouded header is not dependable in the field. Turned round without a diode, every
+        package and electrolytic of the board is destroyed at once.
+    Fails:
+        start from: lane
+        D1 1=BUS+ 2=V+
+    Passes:
+        start from: lane
+    Limits:
+        Knows series diodes only: protection by transistors or fuses shows as missing. Surge current is
+        not judged.
+    References:
+        Reverse voltage of 1N5817 to 1N5819: Diodes Inc. DS23001. Series diode in each rail: common
+        practice.
+    """
+
+    name = "reverse-polarity"
+    subject = "supply"
+
+    def measure(self, context: Context) -> Iterator[Measurement]:
+        """Every diode of every rail."""
+        board = context.board
+        for rail in rails(board):
+            if not rail.diodes:
+                yield Measurement(
+                    parts=board.parts_of("header"),
+                    what=f"{rail.name}: no diode",
+                    nets=(rail.bus,),
+                    fault=Fault(
+                        f"no diode stands between the header and the {rail.name} (net {rail.bus})",
+                        "a header turned round would put the wrong sign on every package and electrolytic",
+                        f"put a diode in series with {rail.bus}",
+                    ),
+                )
+            for ref in rail.diodes:
+                yield from self._diode(board, context.spec, rail, ref)
+
+    def _diode(self, board: Board, spec: Spec | None, rail: Rail, ref: str) -> Iterator[Measurement]:
+        right = board.net(ref, "2" if rail.sign > 0 else "1") == rail.bus
+        fault = None
+        if not right:
+            fault = Fault(
+                f"{ref} stands the wrong way round in the {rail.name}",
+                "it blocks the supply, and conducts when the header is turned round",
+                f"put its {'anode (pin 2)' if rail.sign > 0 else 'cathode (pin 1)'} on {rail.bus}",
+            )
+        yield Measurement(
+            parts=(ref,),
+            what=f"{ref} in the {rail.name}: {'right' if right else 'wrong'} way round",
+            nets=rail.nets,
+            fault=fault,
+        )
+        record = board.record(ref)
+        if spec is None or not isinstance(record, Diode):
+            return
+        high = 1 + spec.rails.tolerance
+        positive, negative = spec.rails.positive * high, spec.rails.negative * high
+        stress = 2 * positive if spec.rails.single else positive - negative
+        limit = board.rating(ref, "voltage") or record.reverse_voltage
+        volts = format_quantity(stress, "voltage", 4)
+        fault = None
+        margin = left(stress, limit)
+        if margin < 0:
+            fault = Fault(
+                f"{ref} blocks {format_quantity(limit, 'voltage')} and can see {volts}",
+                "that is what a header turned round puts on it while the reservoirs are still charged",
+                "fit a diode of a higher reverse voltage",
+            )
+        yield Measurement(
+            parts=(ref,),
+            what=f"{ref} in the {rail.name}: {volts} in reverse of {format_quantity(limit, 'voltage')}",
+            measured=stress,
+            limit=limit,
+            unit="V",
+            margin=margin,
+            nets=rail.nets,
+            fault=fault,
+            key="rails.positive" if rail.sign > 0 else "rails.negative",
+        )
+        powers = rail_powers(board, spec.rails, spec.signal)
+        current = next((p.current_max for p in powers if (p.bus_nominal > 0) == (rail.sign > 0)), None)
+        if current is None:
+            return
+        fault = None
+        margin = left(current, record.forward_current)
+        if margin < 0:
+            fault = Fault(
+                f"{ref} carries {format_quantity(record.forward_current, 'current')} and the {rail.name} draws "
+                f"{format_quantity(current, 'current')}",
+                "the diode overheats",
+                "fit a diode of a higher forward current",
+            )
+        yield Measurement(
+            parts=(ref,),
+            what=f"{ref} in the {rail.name}: {format_quantity(current, 'current')} of "
+            f"{format_quantity(record.forward_current, 'current')}",
+            measured=current,
+            limit=record.forward_current,
+            unit="A",
+            margin=margin,
+            nets=rail.nets,
+            fault=fault,
+            key="channels",
+        )

@@ -1,0 +1,202 @@
+"""The search equals brute force: every combination, one by one, in plain Python, on reduced catalogues."""
+
+from __future__ import annotations
+
+import itertools
+import math
+import random
+from collections.abc import Callable, Iterator
+
+import pytest
+
+from modgen.catalogue import Amplifier, Capacitor, Catalogue, Control, Diode, Resistor
+from modgen.design import practice
+from modgen.design.choose import choose
+from modgen.design.network import Arrangement, Grid, Room, arrangements, controls, isolators
+from modgen.design.stage import Stage, stages_of
+from modgen.design.supply import price_at
+from modgen.formulas.glide import time_factor
+from modgen.spec import Spec
+
+AMPLIFIERS = ("TL07x", "LF35x", "OPAx134", "LM358")
+
+
+def reduced(catalogue: Catalogue, seed: int, caps: int = 9, pots: int = 6, resistors: int = 30) -> Catalogue:
+    """A random part of the catalogue, with all that the search does not look at left in."""
+    chance = random.Random(seed)
+    keep: list[str] = []
+    for kind, most in ((Capacitor, caps), (Control, pots), (Resistor, resistors)):
+        fit = [
+            p.key
+            for p in catalogue.of(kind)
+            if p.mount != "surface"
+            and not (isinstance(p, Capacitor) and p.capacitance < 220e-9 and p.dielectric != "c0g")
+            and not (isinstance(p, Control) and (p.resistance < 90e3 or p.taper != "log"))
+        ]
+        keep += chance.sample(fit, most)
+    keep += [a.key for a in catalogue.of(Amplifier) if a.type in AMPLIFIERS and a.mount == "through-hole"]
+    keep += [d.key for d in catalogue.of(Diode) if d.mount == "through-hole"]
+    # without these no stage can be made at all, whatever the sample
+    keep += ["metal-film-0207-1k0", "metal-film-0207-10k", "metal-film-0207-470k", "metal-film-0207-1m0"]
+    return Catalogue({key: catalogue.parts[key] for key in sorted(set(keep))})
+
+
+def steps(cost: float, error: float, area: float) -> tuple[int, int, int]:
+    return (
+        math.floor(cost / practice.COST_STEP + 0.5 + 1e-6),
+        math.floor(1200 * error / practice.ERROR_STEP + 0.5 + 1e-6),
+        math.floor(area * 1e6 / practice.AREA_STEP + 0.5 + 1e-6),
+    )
+
+
+def feasible(spec: Spec, cap: Arrangement, pot: Control, r: Resistor) -> tuple[float, float] | None:
+    """Guaranteed shortest and longest glide, or None outside the asked range: hand formulas, no arrays."""
+    factor = time_factor(spec.glide.measure, spec.glide.step, spec.glide.within)
+    if spec.glide.cover == "worst-case":
+        c_low, c_high = (cap.capacitance * (1 + s * cap.part.tolerance) for s in (-1, 1))
+        shortest = factor * c_high * (r.resistance * (1 + r.tolerance) + pot.end_high)
+        longest = factor * c_low * (r.resistance * (1 - r.tolerance) + pot.resistance * (1 - pot.tolerance))
+    else:
+        shortest = factor * cap.capacitance * (r.resistance + pot.end)
+        longest = factor * cap.capacitance * (r.resistance + pot.resistance)
+    if shortest > spec.glide.shortest * (1 + 1e-9) or longest < spec.glide.longest * (1 - 1e-9):
+        return None
+    return shortest, longest
+
+
+def networks(spec: Spec, catalogue: Catalogue, stage: Stage) -> Iterator[tuple[tuple, tuple[str, str, str]]]:
+    """Every network that fits what a stage leaves of the budgets, with its part of the key."""
+    span = spec.signal.high - spec.signal.low
+    signal = max(abs(spec.signal.low), abs(spec.signal.high))
+    bias = stage.amplifier.bias_max
+    for cap, pot, r in itertools.product(
+        arrangements(spec, catalogue)[0], controls(spec, catalogue)[0], isolators(spec, catalogue)
+    ):
+        times = feasible(spec, cap, pot, r)
+        if times is None or span / (r.resistance * (1 - r.tolerance)) > stage.amplifier.short_circuit_least:
+            continue
+        through = r.resistance * (1 + r.tolerance) + pot.resistance * (1 + pot.tolerance)
+        scale = 0.0 if cap.leaky else through / (through + cap.part.insulation(signal))
+        offset = bias * through + (cap.part.leakage(signal) * through if cap.leaky else 0.0)
+        if scale > spec.accuracy.scale - stage.scale or offset > spec.accuracy.offset - stage.offset:
+            continue
+        n = spec.channels * spec.order.boards
+        cost = cap.count * price_at(cap.part, cap.count * n) + price_at(pot, n) + price_at(r, n)
+        area = cap.count * cap.part.body.area + pot.body.area + r.body.area
+        mismatch = times[1] / spec.glide.longest * spec.glide.shortest / times[0]
+        oversized = times[1] > practice.OVERSIZE * spec.glide.longest
+        yield (
+            (
+                cap.leaky,
+                bias * through > 0.1 * spec.accuracy.offset,
+                oversized,
+                steps(cost, scale + offset / span, area),
+                round(math.log(mismatch), 6),
+            ),
+            (cap.part.key, pot.key, r.key),
+        )
+
+
+def brute_force(spec: Spec, catalogue: Catalogue) -> tuple[str, tuple[str, ...]] | None:
+    """The best of every stage with every network, by the stated order and nothing else."""
+    span = spec.signal.high - spec.signal.low
+    best: tuple | None = None
+    by_type: dict[str, list[Amplifier]] = {}
+    for a in catalogue.of(Amplifier):
+        by_type.setdefault(a.type, []).append(a)
+    first = {"cost": 0, "accuracy": 1, "size": 2}[spec.build.prefer]
+    for name, forms in by_type.items():
+        for stage in stages_of(spec, catalogue, forms)[0]:
+            mine = steps(stage.cost, stage.scale + stage.offset / span, stage.area)
+            for (leaky, biased, oversized, theirs, mismatch), keys in networks(spec, catalogue, stage):
+                weights = (spec.channels, 1, spec.channels)
+                sums = tuple(a + n * b for a, b, n in zip(mine, theirs, weights, strict=True))
+                key = (
+                    leaky,
+                    biased,
+                    oversized,
+                    stage.output.hot,
+                    sums[first],
+                    mismatch,
+                    sums[0],
+                    stage.terminator.resistance,
+                    -stage.output.series.resistance,
+                    sums[1],
+                    sums[2],
+                    name,
+                    [p.key for p in stage.packages],
+                    stage.diode.key,
+                    keys,
+                )
+                if best is None or key < best:
+                    best = key
+    return None if best is None else (best[11], (*best[12], best[13], *best[14]))
+
+
+CASES = {
+    "cost, nominal": (),
+    "size": ("build: {prefer: size}",),
+    "accuracy, worst case": (
+        "build: {prefer: accuracy}",
+        "glide: {shortest: 20 ms, longest: 1 s, cover: worst-case}",
+    ),
+    "pitch": ("signal: {pitch: true}",),
+    "settling, 25 boards": (
+        "glide: {shortest: 20 ms, longest: 3 s, measure: settle, step: 5 V, within: 5 cents}",
+        "order: {boards: 25}",
+    ),
+}
+
+
+@pytest.mark.parametrize("case", CASES)
+@pytest.mark.parametrize("seed", range(4))
+def test_equals_brute_force(catalogue: Catalogue, spec_of: Callable, case: str, seed: int) -> None:
+    spec, small = spec_of(*CASES[case]), reduced(catalogue, seed)
+    expected = brute_force(spec, small)
+    if expected is None:
+        pytest.skip("nothing fits in this sample; the case below counts those that do")
+    best = choose(spec, small).best
+    parts = (
+        *(p.key for p in best.stage.packages),
+        best.stage.diode.key,
+        best.network.capacitor.part.key,
+        best.network.control.key,
+        best.network.isolating.key,
+    )
+    assert (best.stage.type, parts) == expected
+
+
+def test_most_samples_hold_a_solution(catalogue: Catalogue, spec_of: Callable) -> None:
+    """Otherwise the comparison above would compare nothing."""
+    found = sum(
+        brute_force(spec_of(*lines), reduced(catalogue, seed)) is not None
+        for lines in CASES.values()
+        for seed in range(4)
+    )
+    assert found >= 14
+
+
+@pytest.mark.parametrize("prefer", ["cost", "accuracy", "size"])
+def test_order_of_the_catalogue_does_not_matter(catalogue: Catalogue, spec_of: Callable, prefer: str) -> None:
+    spec = spec_of(f"build: {{prefer: {prefer}}}")
+    keys = list(catalogue.parts)
+    random.Random(5).shuffle(keys)
+    shuffled = Catalogue({key: catalogue.parts[key] for key in keys})
+    assert choose(spec, shuffled).best.key == choose(spec, catalogue).best.key
+
+
+def test_nearest_range_is_the_true_extreme(catalogue: Catalogue, spec_of: Callable) -> None:
+    spec = spec_of("glide: {shortest: 1 ms, longest: 100 s}")
+    small = reduced(catalogue, 1)
+    caps, pots, rs = arrangements(spec, small)[0], controls(spec, small)[0], isolators(spec, small)
+    grid = Grid(spec, caps, pots, rs)
+    longest, shortest = grid.nearest(Room(0.0, 1.0, 1.0, 0.0))
+    factor = math.log(9)
+    times = [
+        (factor * c.capacitance * (r.resistance + p.end), factor * c.capacitance * (r.resistance + p.resistance))
+        for c, p, r in itertools.product(caps, pots, rs)
+    ]
+    quick = [b for a, b in times if a <= 1e-3]
+    slow = [a for a, b in times if b >= 100]
+    assert longest == (pytest.approx(max(quick)) if quick else None)
+    assert shortest == (pytest.approx(min(slow)) if slow else None)

@@ -1,0 +1,65 @@
+import csv
+import io
+
+import pytest
+
+from modgen.outputs.bom import bom_lines
+from modgen.outputs.table_csv import HEADER, plain_text, safe_text, write_bom_csv
+
+
+def rows(job):
+    return list(csv.DictReader(io.StringIO(write_bom_csv(job).decode("utf-8-sig"), newline="")))
+
+
+def test_one_row_a_line_and_as_many_parts_as_the_netlist(job):
+    found = rows(job)
+    assert tuple(found[0]) == HEADER
+    assert len(found) == len(bom_lines(job.netlist, job.catalogue))
+    assert sum(int(row["Per board"]) for row in found) == len(job.netlist.parts)
+
+
+def test_a_whole_row(make):
+    found = {row["Part"]: row for row in rows(make(boards=25))}
+    assert found["c-1u-pp"] == {
+        "Line": "2",
+        "References": "C1, C4",
+        "Per board": "2",
+        "Value": "1 µF",
+        "Description": "capacitor c-1u-pp",
+        "Rating": "63 V",
+        "Tolerance": "5 %",
+        "Package": "axial-0207",
+        "Mount": "through-hole",
+        "Part": "c-1u-pp",
+        "Order code": "c-1u-pp",
+        "Alternates": "",
+        "Pack": "1",
+        "Boards": "25",
+        "Needed": "50",
+        "Spares": "3",
+        "To order": "53",
+        "Unit price": "0.7",
+        "Line total": "37.10",
+        "Prices": "invented",
+        "Status": "cleared",
+    }
+    assert found["r-330"]["Unit price"] == found["r-330"]["Line total"] == "no price"
+
+
+def test_every_row_says_when_it_is_not_cleared(faulty):
+    assert {row["Status"] for row in rows(faulty)} == {"not cleared for ordering"}
+
+
+@pytest.mark.parametrize("sign", ["=", "+", "-", "@", "\t", "\r"])
+def test_no_text_is_a_formula(sign):
+    assert safe_text(f"{sign}1+1").startswith("'")
+    assert not safe_text(f"1{sign}1").startswith("'")
+
+
+def test_control_characters_and_line_breaks_are_spaces():
+    assert plain_text("a\x00b\nc\x7fd\ud800e") == "a b c d e"
+    assert plain_text("Ω µ – ok") == "Ω µ – ok"
+
+
+def test_the_same_bytes_every_time(make):
+    assert write_bom_csv(make(3)) == write_bom_csv(make(3))

@@ -50,7 +50,7 @@ class Arrangement:
 
 @dataclass(frozen=True)
 class Room:
-    """What an amplifier stage leaves to the network: its bias [A], budgets [-, V], the least isolating resistor [ohm]."""
+    """What an amplifier stage leaves to the network: its bias [A], budgets [-, V], least isolating resistor [ohm]."""
 
     bias: float
     scale: float
@@ -217,7 +217,8 @@ class Grid:
         """The best combinations whose errors fit what is left of the budgets, best first.
 
         Order: insulating dielectrics before leaking ones; little bias through the control before much; ranges
-        that are not oversized before those that are; then ``prefer``, then how closely the range fits, then the parts' names.
+        that are not oversized before those that are; then ``prefer``, then how closely the range fits, then the
+        parts' names.
         """
         import numpy as np
 

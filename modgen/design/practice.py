@@ -30,8 +30,10 @@ MOST_ISOLATING = 100e3
 MOST_SERIES = 10e3
 #: Share of the offset budget that bias through one such resistor may take. Our allocation.
 BIAS_SHARE = 0.1
-#: Shares of the scale budget that loading of the source may take, tried in turn. Our allocation.
+#: Shares of the scale budget that loading of the source may take, each a candidate; the last only when a quarter
+#: cannot be had, as with many chained inputs. Our allocation.
 SOURCE_SHARES = (0.25, 0.125, 0.0625)
+MOST_SOURCE_SHARE = 0.6
 #: Terminators [ohm]: below, sources are loaded; above, dirt on the board counts. Common practice, no source.
 LEAST_TERMINATOR = 100e3
 MOST_TERMINATOR = 10e6

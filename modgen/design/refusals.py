@@ -76,8 +76,8 @@ def network_fault(grid: Grid, room: Room) -> str:
     offset = float((grid.leak + room.bias * grid.through)[able].min())
     if offset > room.offset:
         return (
-            f"its bias of up to {format_quantity(room.bias, 'current')} and the capacitor's leakage through the control "
-            f"are an offset of {format_quantity(offset, 'voltage')} at least; "
+            f"its bias of up to {format_quantity(room.bias, 'current')} and the capacitor's leakage through the "
+            f"control are an offset of {format_quantity(offset, 'voltage')} at least; "
             f"{format_quantity(max(room.offset, 0.0), 'voltage')} of the budget are left"
         )
     return (
@@ -94,7 +94,10 @@ def no_amplifier(spec: Spec, refused: Sequence[tuple[str, str]]) -> InputError:
         if named
         else "no amplifier in the catalogue works on these rails with this signal"
     )
-    fix = "change the rails, the signal's span, the accuracy budget or the amplifier so that one of these reasons falls away"
+    fix = (
+        "change the rails, the signal's span, the accuracy budget or the amplifier "
+        "so that one of these reasons falls away"
+    )
     return refusal(spec, "build.amplifier" if named else "rails", what, _list("every type is refused:", refused), fix)
 
 
@@ -126,7 +129,8 @@ def no_network(spec: Spec, grid: Grid, room: Room, refused: Sequence[tuple[str, 
     else:
         blocks = (
             "the two together block: the range of one control goes from what is left at its end and the isolating "
-            f"resistor ({format_quantity(room.isolating, 'resistance')} at least, for the driving amplifier) to its total"
+            f"resistor ({format_quantity(room.isolating, 'resistance')} at least, for the driving amplifier) "
+            "to its total"
         )
     cover = "guaranteed over tolerance" if glide.cover == "worst-case" else "nominally"
     asked = f"{_time(glide.shortest)} to {_time(glide.longest)}"

@@ -9,6 +9,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
+from itertools import islice
 
 from modgen.catalogue import Catalogue
 from modgen.catalogue.records import Amplifier, Capacitor, Diode, Resistor
@@ -122,11 +123,13 @@ def terminators(spec: Spec, catalogue: Catalogue) -> Iterator[tuple[Resistor, fl
     def error(r: Resistor) -> float:
         return loading_error(spec.signal.source, r.resistance * (1 - r.tolerance) / parallel)
 
-    for share in practice.SOURCE_SHARES:
-        for r in fit:
-            if error(r) <= share * spec.accuracy.scale:
-                yield r, error(r)
-                break
+    shares = practice.SOURCE_SHARES
+    if all(error(r) > shares[0] * spec.accuracy.scale for r in fit):
+        shares = (practice.MOST_SOURCE_SHARE,)
+    for share in shares:
+        within = (r for r in fit if error(r) <= share * spec.accuracy.scale)
+        for r in islice(within, 1):
+            yield r, error(r)
 
 
 def output_stages(spec: Spec, catalogue: Catalogue, amplifier: Amplifier) -> list[OutputStage]:
@@ -182,7 +185,9 @@ def series_resistor(spec: Spec, catalogue: Catalogue, amplifier: Amplifier, leas
         most = min(most, practice.BIAS_SHARE * spec.accuracy.offset / amplifier.bias_max)
     boards = spec.channels * spec.order.boards
     fit = [
-        r for r in catalogue.of(Resistor) if r.mount == spec.build.mount and least <= r.resistance <= most * (1 + 1e-9)
+        r
+        for r in catalogue.of(Resistor)
+        if r.mount == spec.build.mount and least * (1 - 1e-9) <= r.resistance <= most * (1 + 1e-9)
     ]
     return min(fit, key=lambda r: (-r.resistance, price_at(r, boards), r.body.area, r.key), default=None)
 

@@ -16,6 +16,9 @@ HEADER_NEGATIVE = ("1", "2")
 HEADER_GROUND = ("3", "4", "5", "6", "7", "8")
 HEADER_POSITIVE = ("9", "10")
 
+#: A resistor in a rail up to this is a filter [ohm]; above, it would drop volts. Common practice, no source.
+MOST_FILTER = 100.0
+
 #: a switched contact: socket, tip net, switch net
 Contact = tuple[str, str, str]
 
@@ -156,7 +159,8 @@ def least_path(
 class Rail:
     """One supply as it is wired: at the header, the diodes in series, and behind them.
 
-    ``sign`` is +1 or -1. ``diodes`` are those with one end on the bus and the other neither on it nor on 0 V.
+    ``sign`` is +1 or -1. ``diodes`` are those between the bus and nets that feed supply pins; ``protected``
+    are these nets, also behind a filter resistor.
     """
 
     sign: int
@@ -193,6 +197,7 @@ def rails(board: Board) -> tuple[Rail, ...]:
     """
     grounds = set(ground_nets(board))
     headers = bool(board.parts_of("header"))
+    fed = {net for s in board.sections for net in (s.positive, s.negative) if net} - grounds
     out = []
     for sign, pins, bus_name, name in (
         (1, HEADER_POSITIVE, board.bus_positive, board.positive),
@@ -204,11 +209,26 @@ def rails(board: Board) -> tuple[Rail, ...]:
         for bus in buses:
             if bus in grounds:
                 continue
-            diodes = [n for n in board.between(bus, "diode") if n.net not in grounds]
-            # with no diode in between, the bus itself feeds the board
-            behind = tuple(sorted({n.net for n in diodes}))
-            out.append(Rail(sign, bus, tuple(n.ref for n in diodes), behind))
+            stop = {bus, *grounds}
+            diodes = [(n.ref, _filtered(board, n.net, stop)) for n in board.between(bus, "diode")]
+            diodes = [(ref, nets) for ref, nets in diodes if not nets & grounds]
+            # a diode that leads to no supply pin clamps something; it is not in the rail
+            series = [(ref, nets) for ref, nets in diodes if nets & fed] or diodes
+            behind = sorted({net for _, nets in series for net in nets})
+            out.append(Rail(sign, bus, tuple(ref for ref, _ in series), tuple(behind)))
     return tuple(out)
+
+
+def _filtered(board: Board, net: str, stop: set[str]) -> set[str]:
+    """A net and those behind resistors that are no more than a filter in the rail."""
+    found, queue = {net}, [net]
+    while queue:
+        for step in board.between(queue.pop(), "resistor"):
+            value = board.value(step.ref)
+            if value is not None and value <= MOST_FILTER and step.net not in found | stop:
+                found.add(step.net)
+                queue.append(step.net)
+    return found
 
 
 def may_stay_open(board: Board, ref: str, pin: str) -> str:
@@ -240,7 +260,9 @@ def is_input(board: Board, ref: str) -> bool:
         return True
     outputs = {s.output for s in board.sections if s.output}
     stop = set(board.supply_nets)
-    path = least_path(board, tip, outputs, around=stop)
+    # behind an amplifier's input another way round begins: a summing input is not fed by its own output
+    inputs = {net for s in board.sections for net in (s.inverting, s.noninverting) if net}
+    path = least_path(board, tip, outputs, around=stop | (inputs - outputs))
     return path is None
 
 

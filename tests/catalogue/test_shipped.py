@@ -98,6 +98,8 @@ def test_amplifiers_come_in_both_forms_and_both_mounts():
         "MCP600x": both,
         "OPAx192": surface,
         "TLV915x": surface,
+        "TLC27x": both,
+        "OPA2604": {(2, "through-hole"), (2, "surface")},
     }
     found: dict[str, set] = {}
     for kind, sections, mount in forms:

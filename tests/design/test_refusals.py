@@ -1,0 +1,142 @@
+"""What cannot be had is refused for the right reason, at the right place, with what can be had."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+import pytest
+
+from modgen.catalogue import Catalogue
+from modgen.design import make_design
+from modgen.problems import InputError, Problem
+
+
+@pytest.fixture
+def refused(catalogue: Catalogue, spec_of: Callable) -> Callable[..., Problem]:
+    def refuse(*lines: str) -> Problem:
+        with pytest.raises(InputError) as error:
+            make_design(spec_of(*lines), catalogue)
+        (problem,) = error.value.problems
+        return problem
+
+    return refuse
+
+
+def at(problem: Problem) -> tuple[int, int]:
+    return problem.place.line, problem.place.column
+
+
+def test_longest_glide_that_needs_a_capacitor_that_does_not_exist(refused: Callable) -> None:
+    problem = refused("glide: {shortest: 5 ms, longest: 900 s}")
+    assert at(problem) == (5, 25)
+    assert problem.what == "a glide of 5 ms to 900 s (rise) cannot be had nominally from the catalogue"
+    assert problem.why == (
+        "the longest glide blocks: no capacitor is large enough for any control; "
+        "the nearest that can be had: 5 ms to 7.26 s"
+    )
+    assert problem.fix == (
+        "change glide.shortest or glide.longest to a range that can be had, or add parts with build.catalogue"
+    )
+
+
+def test_range_wider_than_one_control(refused: Callable) -> None:
+    problem = refused("glide: {shortest: 200 us, longest: 10 s, cover: worst-case}")
+    assert problem.what == "a glide of 200 µs to 10 s (rise) cannot be had guaranteed over tolerance from the catalogue"
+    assert problem.why.startswith("the two together block: the range of one control goes from what is left at its end")
+    assert "the nearest that can be had: 200 µs to " in problem.why
+    assert problem.why.endswith(" to 10 s")
+
+
+def test_the_nearest_range_can_be_had(catalogue: Catalogue, spec_of: Callable, refused: Callable) -> None:
+    why = refused("glide: {shortest: 5 ms, longest: 900 s}").why
+    longest = why.rpartition(" to ")[2]
+    # the text is rounded to three figures: a hair less is certainly within it
+    shorter = f"{float(longest.removesuffix(' s')) * 0.99:.4g} s"
+    assert make_design(spec_of(f"glide: {{shortest: 5 ms, longest: {shorter}}}"), catalogue).values.glide
+
+
+def test_signal_too_large_for_the_rails(refused: Callable) -> None:
+    problem = refused("signal: {span: ±10 V}")
+    assert problem.what == "no amplifier in the catalogue works on these rails with this signal"
+    assert at(problem) == (4, 1)
+    reasons = {line.split()[0]: line.strip() for line in problem.why.splitlines()[1:]}
+    assert reasons["TL07x"] == "TL07x the input range at the negative rail is 2.92 V short behind 1n5818"
+    assert (
+        reasons["MCP600x"] == "MCP600x withstands 7 V across its supply pins; the rails reach 25.2 V at 5 % tolerance"
+    )
+
+
+def test_low_voltage_type_on_high_rails(refused: Callable) -> None:
+    problem = refused("build: {amplifier: TLV915x, mount: surface}")
+    assert at(problem) == (6, 9)
+    assert problem.what == "amplifier 'TLV915x' does not work in this module"
+    assert problem.why == "TLV915x withstands 20 V across its supply pins; the rails reach 25.2 V at 5 % tolerance"
+
+
+def test_bipolar_input_behind_a_large_control(refused: Callable) -> None:
+    problem = refused("build: {amplifier: NE5532}")
+    assert problem.what == "the accuracy budget cannot be kept over the glide range"
+    assert (
+        "NE5532 its bias of up to 800 nA and the capacitor's leakage through the control are an offset of "
+        in problem.why
+    )
+
+
+@pytest.mark.parametrize(
+    ("lines", "why"),
+    [
+        (
+            ("build: {capacitor: electrolytic}", "signal: {pitch: true}"),
+            "electrolytic leaks tens to hundreds of cents through the control",
+        ),
+        (("build: {capacitor: x7r}",), "x7r is piezoelectric, and its capacitance changes with the voltage on it"),
+    ],
+)
+def test_dielectrics_that_cannot_glide(refused: Callable, lines: tuple[str, ...], why: str) -> None:
+    problem = refused(*lines)
+    assert problem.why == why
+    assert problem.what.startswith("no ")
+    assert problem.what.endswith(" in the catalogue can be the glide capacitor")
+
+
+def test_leaking_capacitor_is_never_accepted_in_silence(refused: Callable) -> None:
+    problem = refused("build: {capacitor: electrolytic}")
+    assert problem.what == "the accuracy budget cannot be kept over the glide range"
+    assert "TL07x its bias of up to 200 pA and the capacitor's leakage through the control are an offset" in problem.why
+
+
+def test_unknown_names(refused: Callable) -> None:
+    problem = refused("build: {amplifier: TL07}")
+    assert problem.what == "amplifier 'TL07' is not in the catalogue"
+    assert problem.fix.startswith("did you mean 'TL07x'? ")
+    problem = refused("build: {capacitor: film-pp-bx}")
+    assert problem.what == "capacitor family 'film-pp-bx' is not in the catalogue"
+    assert problem.fix.startswith("did you mean 'film-pp-box")
+
+
+def test_type_not_sold_for_the_mount(refused: Callable) -> None:
+    problem = refused("build: {amplifier: OPA164x}")
+    assert problem.what == "amplifier 'OPA164x' is not sold for through-hole mounting"
+    assert problem.why == "its forms in the catalogue are opa1642-soic8, opa1644-soic14"
+
+
+def test_single_supply_with_a_type_that_cannot_reach_0v(refused: Callable) -> None:
+    problem = refused(
+        "rails: {positive: 12 V, negative: 0 V}", "signal: {span: 0 V to 5 V}", "build: {amplifier: TL07x}"
+    )
+    assert problem.why == "TL07x the input range at 0 V is 4 V short behind 1n5819"
+
+
+@pytest.mark.parametrize(
+    "lines",
+    [
+        ("rails: {positive: 18 V, negative: -18 V}",),
+        ("rails: {positive: 18 V, negative: -18 V}", "build: {mount: surface}"),
+        ("rails: {positive: 5 V, negative: 0 V}", "signal: {span: 0 V to 3 V}"),
+        ("rails: {positive: 12 V, negative: 0 V}", "signal: {span: 0 V to 5 V}"),
+        ("rails: {positive: 12 V, negative: 0 V}", "signal: {span: 0 V to 5 V}", "build: {mount: surface}"),
+        ("rails: {positive: 9 V, negative: -9 V}", "signal: {span: ±3 V}"),
+    ],
+)
+def test_rails_that_can_be_had(catalogue: Catalogue, spec_of: Callable, lines: tuple[str, ...]) -> None:
+    assert make_design(spec_of(*lines), catalogue).parts

@@ -190,8 +190,8 @@ def read_yaml(path: Path, *, what: str = "spec", limit: int = 1_000_000) -> Node
     return parse_yaml(read_bytes(path, what=what, limit=limit), str(path), what=what)
 
 
-def read_bytes(path: Path, *, what: str, limit: int) -> bytes:
-    """The bytes of a regular file that is not larger than ``limit`` [byte].
+def read_bytes(path: Path, *, what: str, limit: int, form: str = "YAML") -> bytes:
+    """The bytes of a regular file that is not larger than ``limit`` [byte]; ``form`` is how it is written.
 
     Raises
     ------
@@ -206,7 +206,7 @@ def read_bytes(path: Path, *, what: str, limit: int) -> bytes:
     try:
         state = path.stat()
         if stat.S_ISDIR(state.st_mode):
-            raise refuse(f"this is a folder, not a {what}", f"a {what} is one YAML file", "name the file")
+            raise refuse(f"this is a folder, not a {what}", f"a {what} is one {form} file", "name the file")
         if not stat.S_ISREG(state.st_mode):
             # a device or a pipe can be endless, or wait for ever
             raise refuse(f"this is not a regular file, so no {what}", "devices and pipes are not read", "name a file")

@@ -16,6 +16,7 @@ from modgen.catalogue.records import (
     Resistor,
 )
 from modgen.catalogue.shelf import Catalogue, load_catalogue
+from modgen.catalogue.tables import read_prices, read_stock
 
 __all__ = [
     "Amplifier",
@@ -33,4 +34,6 @@ __all__ = [
     "Resistor",
     "describe",
     "load_catalogue",
+    "read_prices",
+    "read_stock",
 ]

@@ -7,7 +7,11 @@ from dataclasses import dataclass, field
 
 @dataclass(frozen=True)
 class Evidence:
-    """Where figures come from. kind: ``published document``, ``common practice``, ``memory``, ``invented``."""
+    """Where figures come from.
+
+    kind: ``published document``, ``common practice``, ``memory``, ``invented``; ``own file`` for the prices of the user's
+    price file, which no catalogue file can state.
+    """
 
     kind: str
     source: str

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from functools import cached_property, lru_cache
 from importlib.resources import files
 from pathlib import Path
@@ -12,7 +12,7 @@ from typing import TypeVar
 
 from modgen.catalogue.layers import Known
 from modgen.catalogue.loader import Reader
-from modgen.catalogue.records import Part
+from modgen.catalogue.records import Evidence, Part, PriceBreak
 from modgen.documents import parse_yaml, read_yaml
 from modgen.problems import InputError, Problem
 
@@ -55,6 +55,32 @@ class Catalogue:
         if kind not in self._of:
             self._of[kind] = tuple(part for part in self.parts.values() if isinstance(part, kind))
         return self._of[kind]  # type: ignore[return-value]
+
+    def with_prices(self, prices: Mapping[str, tuple[PriceBreak, ...]], file: str) -> Catalogue:
+        """The same parts at prices of one's own; a part that has none there keeps the catalogue's.
+
+        Parameters
+        ----------
+        prices : mapping of str to tuple of PriceBreak
+            Breaks by rising quantity, by key. [-]
+        file : str
+            Where they come from, as the evidence of these prices names it. [-]
+
+        Returns
+        -------
+        Catalogue
+
+        Raises
+        ------
+        KeyError
+            A key is in no catalogue file.
+        """
+        own = ("prices", Evidence("own file", file))
+        parts = dict(self.parts)
+        for key, breaks in prices.items():
+            others = tuple(pair for pair in parts[key].evidence if pair[0] != "prices")
+            parts[key] = replace(parts[key], prices=breaks, evidence=(*others, own))
+        return Catalogue(MappingProxyType(parts), self.replaced, self.added)
 
     @cached_property
     def families(self) -> tuple[str, ...]:

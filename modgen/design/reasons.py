@@ -56,14 +56,21 @@ def _lost(spec: Spec, best: Candidate, other: Candidate) -> str:
     if other.stage.output.hot and not best.stage.output.hot:
         return f"draws more than {text(practice.MOST_SHORT, 'current')} when an output is shorted"
     if spec.build.prefer == "cost" and other.cost > best.cost:
-        return f"costs {other.cost / best.cost - 1:.1%} more for the board at the catalogue's invented prices"
+        return f"costs {other.cost / best.cost - 1:.1%} more for the board at {_prices(spec)}"
     if spec.build.prefer == "size" and other.area > best.area:
         return f"takes {other.area / best.area - 1:.1%} more area"
     if spec.build.prefer == "size" and other.cost > best.cost:
-        return f"takes as much area and costs {other.cost / best.cost - 1:.1%} more at the catalogue's invented prices"
+        return f"takes as much area and costs {other.cost / best.cost - 1:.1%} more at {_prices(spec)}"
     if other.error > best.error:
         return f"{1200 * other.error:.3g} instead of {1200 * best.error:.3g} cents of error, worst case"
     return "equal in what was asked; it comes later by name"
+
+
+def _prices(spec: Spec) -> str:
+    """Whose prices a comparison stands on."""
+    if spec.order.prices:
+        return "your own prices, and the catalogue's invented ones where you give none"
+    return "the catalogue's invented prices"
 
 
 def _network(spec: Spec, outcome: Outcome) -> list[Choice]:
@@ -114,7 +121,7 @@ def _network_lost(spec: Spec, best: Network, other: Network) -> str:
     if other.oversized and not best.oversized:
         return f"reaches {text(other.longest, 'time')}: most of the travel would lie beyond what is asked"
     if spec.build.prefer == "cost" and other.cost > best.cost + 1e-9:
-        return f"costs {other.cost - best.cost:.2f} more a channel at the catalogue's invented prices"
+        return f"costs {other.cost - best.cost:.2f} more a channel at {_prices(spec)}"
     if spec.build.prefer == "size" and other.area > best.area:
         return f"takes {(other.area - best.area) * 1e6:.0f} mm2 more a channel"
     if other.scale > best.scale:

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Mapping
+from dataclasses import dataclass, field
 
 from modgen.analysis.model import Analyses
 from modgen.catalogue import Catalogue
@@ -23,3 +24,5 @@ class Job:
     netlist_text: str
     analyses: Analyses
     report: Report
+    #: parts on hand by catalogue key
+    stock: Mapping[str, int] = field(default_factory=dict)

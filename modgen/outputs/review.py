@@ -21,7 +21,7 @@ if TYPE_CHECKING:
 _KINDS = {unit: kind for kind, unit in UNITS.items()}
 
 #: Kinds of evidence from the firmest to none; words for a heading.
-_EVIDENCE = ("published document", "common practice", "memory", "invented")
+_EVIDENCE = ("published document", "own file", "common practice", "memory", "invented")
 
 
 def review_html(job: Job) -> bytes:
@@ -234,7 +234,7 @@ def evidence_table(job: Job) -> Table:
         rows.append((key, *counts, memory or "none"))
     return Table(
         "Figures by what they rest on",
-        columns("!Record", "#Published", "#Practice", "#Memory", "#Invented", "Figures from memory"),
+        columns("!Record", "#Published", "#Own file", "#Practice", "#Memory", "#Invented", "Figures from memory"),
         tuple(rows),
         note="Invented figures are example prices. Check figures from memory against the maker's sheet "
         "before a large order.",

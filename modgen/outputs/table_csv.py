@@ -36,6 +36,7 @@ HEADER = (
     "Boards",
     "Needed",
     "Spares",
+    "In stock",
     "To order",
     "Unit price",
     "Line total",
@@ -66,7 +67,7 @@ def write_bom_csv(job: Job) -> bytes:
     Parameters
     ----------
     job : Job
-        The module, built and judged; ``spec.order`` says for how many boards and with what spares.
+        The module, built and judged; ``spec.order`` says for how many boards and with what spares, ``stock`` what is taken off.
 
     Returns
     -------
@@ -74,7 +75,7 @@ def write_bom_csv(job: Job) -> bytes:
         One line per orderable part under :data:`HEADER`. A line without a price says so; it is not 0.
     """
     lines = bom_lines(job.netlist, job.catalogue)
-    order = cost(lines, job.spec.order.boards, job.spec.order.spares)
+    order = cost(lines, job.spec.order.boards, job.spec.order.spares, job.stock)
     status = "cleared" if job.report.cleared else NOT_CLEARED
     out = io.StringIO()
     writer = csv.writer(out, lineterminator="\r\n")
@@ -102,6 +103,7 @@ def write_bom_csv(job: Job) -> bytes:
                 order.boards,
                 each.needed,
                 each.spares,
+                each.stock,
                 each.to_order,
                 NO_PRICE if each.unit_price is None else f"{each.unit_price:.6g}",
                 NO_PRICE if each.total is None else f"{each.total:.2f}",

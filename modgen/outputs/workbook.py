@@ -76,7 +76,7 @@ def write_bom_xlsx(job: Job) -> bytes:
     Parameters
     ----------
     job : Job
-        The module, built and judged; ``spec.order`` fills the two input cells.
+        The module, built and judged; ``spec.order`` fills the two input cells, ``stock`` those of the parts on hand.
 
     Returns
     -------
@@ -92,7 +92,7 @@ def write_bom_xlsx(job: Job) -> bytes:
     for sheet, heading in ((summary, "order"), (parts, "parts list"), (facts, "catalogue facts")):
         _top(sheet, job, heading)
     breaks = max([1, *(len(line.prices) for line in lines)])
-    _parts(parts, lines, breaks)
+    _parts(parts, job, lines, breaks)
     _facts(facts, job, lines, breaks)
     _summary(book, summary, job, lines)
     for sheet in (summary, parts, facts):
@@ -217,7 +217,7 @@ def _invented_note(lines: Sequence[BomLine]) -> str:
 # --- sheets ---------------------------------------------------------------------------------------
 
 
-def _parts(sheet: Worksheet, lines: Sequence[BomLine], breaks: int) -> None:
+def _parts(sheet: Worksheet, job: Job, lines: Sequence[BomLine], breaks: int) -> None:
     _text(sheet, "A3", _invented_note(lines))
     _head(sheet, TOP, [heading for heading, _ in COLUMNS])
     for column, (_, width) in enumerate(COLUMNS, start=1):
@@ -241,7 +241,7 @@ def _parts(sheet: Worksheet, lines: Sequence[BomLine], breaks: int) -> None:
             _text(sheet, f"{letter}{row}", text, wrap=True)
         _put(sheet, f"K{row}", f"=boards*C{row}", COUNT)
         _put(sheet, f"L{row}", f"=ROUNDUP(ROUND(K{row}*spares,6),0)", COUNT)
-        _put(sheet, f"M{row}", 0, COUNT, fill=INPUT)
+        _put(sheet, f"M{row}", job.stock.get(line.key, 0), COUNT, fill=INPUT)
         _put(sheet, f"N{row}", f"=MAX(0,K{row}+L{row}-M{row})", COUNT)
         _put(sheet, f"O{row}", line.pack, COUNT)
         from_ = f"'{FACTS}'!${starts[0]}${row}:${starts[1]}${row}"

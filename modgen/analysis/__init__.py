@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from modgen.analysis.accuracy import accuracy_budget
 from modgen.analysis.board import Board, Records
-from modgen.analysis.glide import channel_glides
+from modgen.analysis.glide import boards_inside, channel_glides
 from modgen.analysis.headroom import headrooms
 from modgen.analysis.model import Analyses
 from modgen.analysis.power import rail_powers
@@ -64,10 +64,15 @@ def analyse_board(board: Board, spec: Spec) -> Analyses:
     if board.unreadable:
         raise InputError(board.unreadable)
     powers = rail_powers(board, spec.rails, spec.signal)
+    glides = channel_glides(board, spec.glide)
+    share, low, high = boards_inside(glides)
     return Analyses(
-        glide=channel_glides(board, spec.glide),
+        glide=glides,
         accuracy=accuracy_budget(board, spec.signal, spec.accuracy),
         headroom=headrooms(board, powers, spec.signal, spec.accuracy),
         rails=powers,
         bounds=tuple(net_bounds(board, spec.rails).values()),
+        boards_inside=share,
+        boards_inside_low=low,
+        boards_inside_high=high,
     )

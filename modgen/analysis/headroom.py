@@ -6,7 +6,7 @@ from collections.abc import Iterable, Sequence
 
 from modgen.analysis.board import Board, Lane
 from modgen.analysis.model import Headroom, RailPower
-from modgen.analysis.offset import offset_terms
+from modgen.analysis.offset import FLOOR, offset_terms
 from modgen.analysis.parts import Section, reference_order
 from modgen.formulas.amplifier import reach
 from modgen.spec.model import Accuracy, Signal
@@ -94,18 +94,23 @@ def _needs(board: Board, lane: Lane, signal: Signal, single: bool) -> Iterable[t
     """(stage, subject, section, lowest, highest) that a lane asks of its buffers [V]."""
     terms = offset_terms(board, lane, signal)
     first = sum(term.worst for term in terms if _INPUT in term.name)
-    whole = sum(term.worst for term in terms)
+    # the floor of a single supply stands at the low end only, and is what is measured here
+    whole = sum(term.worst for term in terms if term.name != FLOOR)
 
     def need(offset: float, stretch: float = 1.0) -> tuple[float, float]:
-        # on a single supply an offset below 0 V cannot be followed; it is part of the allowance
-        low = signal.low - (0.0 if single else offset)
-        return low * stretch, (signal.high + offset) * stretch
+        low = signal.low - offset
+        # on a single supply what lies below 0 V cannot be followed; it is part of the allowance
+        return (max(0.0, low) if single else low) * stretch, (signal.high + offset) * stretch
+
+    def with_rest(low: float, high: float) -> tuple[float, float]:
+        # an empty socket puts 0 V on the input, whatever the span is
+        return min(low, 0.0), max(high, 0.0)
 
     stretch = 1.0
     if lane.inside_loop:
         highest = max((board.resistance(ref).high for ref in lane.output_series), default=0.0)
         stretch += highest / signal.load
-    yield _INPUT, "common mode", lane.first, signal.low, signal.high
+    yield _INPUT, "common mode", lane.first, *with_rest(signal.low, signal.high)
     yield _INPUT, "swing", lane.first, *need(first)
-    yield _OUTPUT, "common mode", lane.second, *need(first)
+    yield _OUTPUT, "common mode", lane.second, *with_rest(*need(first))
     yield _OUTPUT, "swing", lane.second, *need(whole, stretch)

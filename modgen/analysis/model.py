@@ -18,8 +18,8 @@ class Interval:
 class ChannelGlide:
     """Glide of one channel, by the measure the spec asks for [s], read from the netlist.
 
-    ``middle`` is at half travel. ``inside`` is the Monte Carlo share of boards whose control covers the
-    whole asked range, with its 95 % Wilson interval.
+    ``middle`` is at half travel. ``inside`` is the Monte Carlo share of such channels whose control covers the
+    whole asked range, with its 95 % Wilson interval; ``boards`` is how many were drawn.
     """
 
     channel: int
@@ -123,3 +123,7 @@ class Analyses:
     headroom: tuple[Headroom, ...]
     rails: tuple[RailPower, ...]
     bounds: tuple[Bound, ...]
+    #: share of boards on which every channel covers the asked range, with its 95 % interval
+    boards_inside: float = 0.0
+    boards_inside_low: float = 0.0
+    boards_inside_high: float = 0.0

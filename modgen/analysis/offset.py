@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 
 from modgen.analysis.board import Board, Lane
+from modgen.analysis.feeding import lanes_sharing
 from modgen.analysis.glide import longest_resistance
 from modgen.analysis.model import Term
 from modgen.analysis.parts import Section
@@ -14,6 +15,8 @@ from modgen.formulas.leakage import bias_at, current_offset, electrolytic_leakag
 from modgen.formulas.loading import parallel
 from modgen.spec.model import Signal
 
+#: name of the term that stands at the low end of the span only
+FLOOR = "output floor"
 #: what data sheets state figures at [degC]
 ROOM = 25.0
 
@@ -71,6 +74,31 @@ def offset_terms(board: Board, lane: Lane, signal: Signal, temperature: float = 
                 "an amplifier with less bias current, or a smaller control with a larger capacitor",
             )
         )
+    others = lanes_sharing(board, lane.input_net) - 1 if lane.input_net else 0
+    if others > 0:
+        current = others * section_bias(lane.first, temperature)
+        out.append(
+            Term(
+                "offset",
+                "bias current, inputs that share the source",
+                current_offset(current, source),
+                "n Ib Rs||Rt",
+                f"{amps(current)} of {others} more through {ohms(source)}",
+                "an amplifier with less bias current, or more inputs of their own",
+            )
+        )
+    floor = _floor(board, lane, signal)
+    if floor > 0.0:
+        out.append(
+            Term(
+                "offset",
+                FLOOR,
+                floor,
+                "swing limit above 0 V - low end of the span",
+                f"{lane.second.name}: the swing begins {volts(floor + signal.low)} above 0 V",
+                "an amplifier whose output comes nearer to its negative rail, or a span that begins higher",
+            )
+        )
     leakage = _leakage_current(board, lane)
     if leakage:
         resistance = longest_resistance(board, lane)
@@ -104,6 +132,13 @@ def section_bias(section: Section, temperature: float) -> float:
     """
     record = section.record
     return bias_at(record.bias_max, max(ROOM, temperature), record.bias_doubling, ROOM)
+
+
+def _floor(board: Board, lane: Lane, signal: Signal) -> float:
+    """How far above the low end of the span an output on a single supply begins [V]; elsewhere 0."""
+    if not board.single:
+        return 0.0
+    return max(0.0, max(section.record.swing_low for _, section in lane.buffers) - signal.low)
 
 
 def _leakage_current(board: Board, lane: Lane) -> float:

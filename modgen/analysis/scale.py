@@ -5,9 +5,9 @@ from __future__ import annotations
 import math
 
 from modgen.analysis.board import Board, Lane
+from modgen.analysis.feeding import nets_before, terminators_seen
 from modgen.analysis.glide import longest_resistance
 from modgen.analysis.model import Term
-from modgen.analysis.parts import reference_order
 from modgen.analysis.words import ohms
 from modgen.catalogue.records import Capacitor
 from modgen.formulas.amplifier import common_mode_error, follower_gain_error
@@ -63,37 +63,9 @@ def scale_terms(board: Board, lane: Lane, signal: Signal) -> tuple[Term, ...]:
     return tuple(out)
 
 
-def terminators_seen(board: Board, net: str) -> tuple[str, ...]:
-    """Terminators that a source plugged into a socket drives.
-
-    Parameters
-    ----------
-    board
-        The netlist seen as electronics.
-    net
-        The tip net of the socket.
-
-    Returns
-    -------
-    tuple of str
-        Resistors to 0 V on that net and on every net that the switched contacts of empty sockets join to
-        it. With inputs normalled in a chain these are the terminators of every input down the chain.
-    """
-    nets, queue = {net}, [net]
-    while queue:
-        at = queue.pop()
-        for jack in board.jacks:
-            # the socket's own plug opens its switch, so the signal only runs from switch to tip
-            if jack.switch == at and jack.tip and jack.tip not in nets and jack.tip != board.ground:
-                nets.add(jack.tip)
-                queue.append(jack.tip)
-    refs = {ref for name in nets for ref in board.ties(name, board.ground, "resistor")}
-    return tuple(sorted(refs, key=reference_order))
-
-
 def _source_loading(board: Board, lane: Lane, signal: Signal) -> Term:
     # the socket that feeds the lane may itself be fed through the chain: the source then drives more terminators
-    nets = _upstream(board, lane.input_net) if lane.input_net else ()
+    nets = nets_before(board, lane.input_net) if lane.input_net else ()
     worst, seen = 0.0, tuple[str, ...]()
     for net in nets:
         refs = terminators_seen(board, net)
@@ -108,19 +80,6 @@ def _source_loading(board: Board, lane: Lane, signal: Signal) -> Term:
         f"{ohms(signal.source)} into {', '.join(seen) or 'no terminator'}",
         "larger terminators, or ground normalling instead of a chain",
     )
-
-
-def _upstream(board: Board, net: str) -> tuple[str, ...]:
-    """A socket net and every socket net that reaches it through switched contacts."""
-    nets, queue = [net], [net]
-    while queue:
-        at = queue.pop()
-        for jack in board.jacks:
-            if jack.tip != at or not jack.switch or jack.switch in nets or jack.switch in board.supply_nets:
-                continue
-            nets.append(jack.switch)
-            queue.append(jack.switch)
-    return tuple(nets)
 
 
 def _loading(source: float, load: float) -> float:

@@ -1,8 +1,8 @@
 """A table as text (CSV) cell by cell, each cell with its place.
 
 Encoding and separator are found out from the file: UTF-8 with or without a byte order mark, UTF-16 by its mark;
-comma, semicolon or tab, whichever makes the needed columns of the first row. Cells are read as RFC 4180 has them. What is
-not certain is refused, never guessed: a byte that is no text, a row with more or fewer cells than the header.
+comma, semicolon or tab, whichever makes the needed columns of the first row. Cells are read as RFC 4180 has them.
+What is not certain is refused, never guessed: a byte that is no text, a row with more or fewer cells than the header.
 """
 
 from __future__ import annotations
@@ -22,6 +22,10 @@ LARGEST_TABLE = 5_000_000
 SEPARATORS: Mapping[str, str] = {",": "a comma", ";": "a semicolon", "\t": "a tab"}
 #: problems of one table that are told one by one; the number of the others is told
 MOST_PROBLEMS = 1000
+#: most columns of a table
+MOST_COLUMNS = 1000
+#: columns that a message repeats
+SHOWN_COLUMNS = 20
 
 _BREAK = re.compile(r"\r\n|\r|\n")
 _CONTROL = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f]")
@@ -82,12 +86,12 @@ class Table:
     wanted: tuple[str, ...]
     _file: str
     _positions: tuple[int, ...]
-    _header: tuple[_Raw, ...]
+    _width: int
     _records: Iterator[tuple[_Raw, ...]]
 
     def rows(self, problems: Collected) -> Iterator[tuple[Cell, ...]]:
         """The cells of the wanted columns, row by row, once; rows that do not fit the header are problems."""
-        width = len(self._header)
+        of_header = f"the {self._width} cells of the header"
         for record in self._records:
             if not any(raw.text for raw in record):
                 continue  # spreadsheet programs leave empty rows at the end
@@ -103,11 +107,13 @@ class Table:
                 )
             if torn:
                 continue
-            if len(record) != width:
+            if len(record) != self._width:
+                # a row is cut behind the first cell too many
+                over = len(record) > self._width
                 problems.add(
                     Problem(
-                        record[min(width, len(record) - 1)].place(self._file),
-                        f"this row has {len(record)} cell{'s' if len(record) > 1 else ''}, the header {width}",
+                        record[-1].place(self._file),
+                        f"this row has more than {of_header}" if over else f"this row has {len(record)} of {of_header}",
                         f"{SEPARATORS[self.separator]} separates the cells of this file",
                         "give each column its cell; put a text that holds the separator between quotation marks",
                     )
@@ -148,21 +154,34 @@ def open_table(
     # the separator that makes the most of the wanted columns; when it makes none, the one that makes most cells
     separator = max(found, key=lambda s: (sum(name in _names(found[s]) for name in wanted), len(found[s])))
     header = found[separator]
-    if not header:
+    if not all(found.values()):
+        # nothing but separators and blanks, whichever of them separates
         example = ",".join(wanted)
         raise InputError([Problem(Place(file, 1, 1), f"this {what} is empty", "", f"begin it with the row {example}")])
+    if len(header) > MOST_COLUMNS:
+        place = header[MOST_COLUMNS].place(file)
+        raise InputError(
+            [
+                Problem(
+                    place,
+                    f"this {what} has more than {MOST_COLUMNS} columns",
+                    "",
+                    f"check that it is a {what}",
+                )
+            ]
+        )
     problems = _header_problems(header, wanted, refused or {}, file, what, SEPARATORS[separator])
     if problems:
         raise InputError(problems)
     names = _names(header)
-    records = _records(text, separator)
+    records = _records(text, separator, len(header))
     for record in records:
         if any(raw.text for raw in record):
             break  # the header itself
-    return Table(separator, tuple(wanted), file, tuple(names.index(name) for name in wanted), header, records)
+    return Table(separator, tuple(wanted), file, tuple(names.index(name) for name in wanted), len(header), records)
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, slots=True)
 class _Raw:
     """A cell as it was cut out."""
 
@@ -189,14 +208,17 @@ def _header_problems(
         places = [raw.place(file) for raw, found in zip(header, names, strict=True) if found == name]
         if not places:
             others = [n for n in names if n and n not in wanted]
+            shown_names = ", ".join(f"'{shown(raw.text)}'" for raw in header[:SHOWN_COLUMNS])
+            more = ", ..." if len(header) > SHOWN_COLUMNS else ""
             near = nearest(name, others)
             problems.append(
                 Problem(
                     header[0].place(file),
                     f"this {what} has no column '{name}'",
-                    f"its first row names {', '.join(f"'{shown(raw.text)}'" for raw in header[:20])}"
-                    f"{' ...' if len(header) > 20 else ''}, with {separator} between",
-                    f"is it '{shown(near)}'? Call it {name}" if near else f"the columns are {', '.join(wanted)}",
+                    f"its first row, with {separator} between, names {shown_names}{more}",
+                    f"is it '{shown(near)}'? Call it {name}"
+                    if near
+                    else f"name the columns {', '.join(wanted)} in the first row",
                 )
             )
         if len(places) > 1:
@@ -221,7 +243,7 @@ def _names(header: Sequence[_Raw]) -> list[str]:
 
 def _header(text: str, separator: str) -> tuple[_Raw, ...]:
     """The first row that is not empty."""
-    return next((record for record in _records(text, separator) if any(raw.text for raw in record)), ())
+    return next((record for record in _records(text, separator, MOST_COLUMNS) if any(raw.text for raw in record)), ())
 
 
 @lru_cache(maxsize=len(SEPARATORS))
@@ -230,11 +252,13 @@ def _cell(separator: str) -> re.Pattern[str]:
 
     The groups that cannot give back (``++``) keep the time linear, whatever is written.
     """
-    return re.compile(rf' *"((?:[^"]++|"")*+)" *({separator}|\r\n|\r|\n|\Z)|([^{separator}\r\n]*)({separator}|\r\n|\r|\n|\Z)')
+    return re.compile(
+        rf' *"((?:[^"]++|"")*+)" *({separator}|\r\n|\r|\n|\Z)|([^{separator}\r\n]*)({separator}|\r\n|\r|\n|\Z)'
+    )
 
 
-def _records(text: str, separator: str) -> Iterator[tuple[_Raw, ...]]:
-    """Every row, with empty ones."""
+def _records(text: str, separator: str, width: int) -> Iterator[tuple[_Raw, ...]]:
+    """Every row, with empty ones; of a row that is wider than ``width`` one cell more."""
     pattern = _cell(separator)
     position = start = 0
     line = 1
@@ -245,9 +269,13 @@ def _records(text: str, separator: str) -> Iterator[tuple[_Raw, ...]]:
         quoted, quoted_end, plain, plain_end = match.groups()
         column = position - start + 1
         if quoted is not None:
-            record.append(_Raw(quoted.replace('""', '"').strip(), line, column))
+            raw = _Raw(quoted.replace('""', '"').strip(), line, column)
         else:
-            record.append(_Raw(plain.strip(), line, column, torn=plain.lstrip(" ").startswith('"')))
+            raw = _Raw(plain.strip(), line, column, torn=plain.lstrip(" ").startswith('"'))
+        if len(record) <= width:
+            record.append(raw)
+        elif raw.text and not record[-1].text:
+            record[-1] = raw  # so that a row is empty only when all of it is
         position = match.end()
         for end in _BREAK.finditer(text, match.start(), position):
             line, start = line + 1, end.end()

@@ -123,6 +123,7 @@ FIGURES: Mapping[str, Mapping[str, Figure]] = MappingProxyType(
             "noise_density": Figure("noise"),
             "dissipation": Figure("power"),
             "ground_input_through_resistor": _may("flag"),
+            "sink_near_negative": _may("current"),
         },
         "control": {
             "resistance": Figure("resistance"),

@@ -9,8 +9,8 @@ from dataclasses import dataclass, field
 class Evidence:
     """Where figures come from.
 
-    kind: ``published document``, ``common practice``, ``memory``, ``invented``; ``own file`` for the prices of the user's
-    price file, which no catalogue file can state.
+    kind: ``published document``, ``common practice``, ``memory``, ``invented``; ``own file`` for prices of the
+    user's price file, which no catalogue file can state.
     """
 
     kind: str
@@ -194,6 +194,9 @@ class Amplifier(Part):
     noise_density: float  # V/sqrt(Hz)
     dissipation: float  # package, W
     ground_input_through_resistor: bool = False
+    #: greatest guaranteed current into the output while it is within a junction drop of the negative rail; 0.0 when
+    #: short_circuit_least holds there too
+    sink_near_negative: float = 0.0
 
 
 @dataclass(frozen=True, kw_only=True)

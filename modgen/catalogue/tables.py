@@ -1,8 +1,8 @@
 """What is on hand and what parts cost, from tables of one's own.
 
-A stock file has the columns ``part`` and ``quantity``; a price file ``part``, ``quantity`` (from which the price holds) and
-``price`` (of one part), one row a break. Other columns are left aside. Nothing is guessed and no row dropped: whatever
-cannot be used is a problem at its line and column, and all problems come at once.
+A stock file has the columns ``part`` and ``quantity``; a price file ``part``, ``quantity`` (from which the price
+holds) and ``price`` (of one part), one row a break. Other columns are left aside. Nothing is guessed and no row
+dropped: whatever cannot be used is a problem at its line and column, and all problems come at once.
 """
 
 from __future__ import annotations
@@ -28,8 +28,14 @@ _QUANTITY = re.compile(r"[0-9]{1,8}")
 _PRICE = re.compile(r"[0-9]{1,8}(?:([.,])[0-9]{1,9})?")
 # left aside, these would change what the prices mean
 _REFUSED = {
-    "pack": ("pack sizes come from the catalogue", "remove the column; a catalogue file of your own can state pack"),
-    "currency": ("prices are numbers without a currency", "bring all prices into one currency and remove the column"),
+    "pack": (
+        "pack sizes come from the catalogue",
+        "remove the column; a catalogue file of your own can state pack",
+    ),
+    "currency": (
+        "prices are numbers without a currency",
+        "bring all prices into one currency and remove the column",
+    ),
 }
 
 
@@ -126,7 +132,7 @@ def _parts(known: Collection[str] | None, problems: Collected) -> Callable[[Cell
         if cell.text not in fixes:
             near = nearest(cell.text, known) if len(fixes) < NEAREST_SOUGHT else ""
             fixes[cell.text] = f"did you mean '{near}'?" if near else "`modgen catalogue` lists the keys"
-        why = "rows are matched by the catalogue's keys; a part of your own needs a catalogue file under build.catalogue"
+        why = "rows are matched by the catalogue's keys; one of your own goes in a catalogue file under build.catalogue"
         problems.add(cell.problem(f"unknown part {cell}", why, fixes[cell.text]))
         # still a key: a second row for it is a problem too
         return cell.text

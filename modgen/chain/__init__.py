@@ -6,11 +6,12 @@ what ``import modgen`` offers.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Iterator, Mapping
+from contextlib import contextmanager
 from pathlib import Path
 
 from modgen.analysis import analyse
-from modgen.catalogue import Catalogue, load_catalogue
+from modgen.catalogue import Catalogue, PriceBreak, load_catalogue, read_prices, read_stock
 from modgen.chain.land_patterns import read_land_patterns
 from modgen.circuit import build
 from modgen.design import make_design
@@ -30,9 +31,25 @@ def _silent(_: str) -> None:
 
 
 def catalogue_of(spec: Spec) -> Catalogue:
-    """Load the shipped catalogue with the spec's own files on top; their paths are relative to the spec."""
-    folder = Path(spec.file).parent
-    return load_catalogue([folder / name for name in spec.build.catalogue])
+    """Load the shipped catalogue with the spec's own files and prices on top; their paths are relative to the spec.
+
+    Raises
+    ------
+    InputError
+        With every problem of these files.
+    """
+    folder, problems = Path(spec.file).parent, list[Problem]()
+    catalogue: Catalogue | None = None
+    prices: Mapping[str, tuple[PriceBreak, ...]] = {}
+    with _collecting(problems):
+        catalogue = load_catalogue([folder / name for name in spec.build.catalogue])
+    if spec.order.prices:
+        with _collecting(problems):
+            # without a catalogue there are no keys to know; all else of the file can still be judged
+            prices = read_prices(folder / spec.order.prices, catalogue.parts if catalogue else None)
+    if catalogue is None or problems:
+        raise InputError(problems)
+    return catalogue.with_prices(prices, spec.order.prices) if prices else catalogue
 
 
 def run(path: str | Path, progress: Progress = _silent) -> Job:
@@ -58,10 +75,8 @@ def run(path: str | Path, progress: Progress = _silent) -> Job:
         A rule crashed.
     """
     progress("reading")
-    spec, catalogue = _load(path)
-    names: Mapping[str, str] = {}
-    if spec.build.land_patterns:
-        names = read_land_patterns(Path(spec.file).parent / spec.build.land_patterns)
+    spec = read_spec(Path(path))
+    catalogue, names, stock = _files(spec)
     progress("sizing")
     design = make_design(spec, catalogue)
     progress("building the circuit")
@@ -69,7 +84,7 @@ def run(path: str | Path, progress: Progress = _silent) -> Job:
     progress("checking")
     analyses = analyse(built.netlist, catalogue, spec)
     report = judge(built.netlist, catalogue, spec)
-    return Job(spec, catalogue, design, built.netlist, built.netlist_text, analyses, report)
+    return Job(spec, catalogue, design, built.netlist, built.netlist_text, analyses, report, stock)
 
 
 def write(job: Job, out: str | Path, progress: Progress = _silent) -> Path:
@@ -99,7 +114,8 @@ def check_netlist(path: str | Path, netlist: str | Path) -> tuple[Spec, Report]:
     except InputError as error:
         problems += error.problems
     try:
-        spec, catalogue = _load(path)
+        spec = read_spec(Path(path))
+        catalogue = catalogue_of(spec)
     except InputError as error:
         raise InputError([*problems, *error.problems]) from error
     if read is None:
@@ -107,6 +123,36 @@ def check_netlist(path: str | Path, netlist: str | Path) -> tuple[Spec, Report]:
     return spec, judge(read, catalogue, spec)
 
 
-def _load(path: str | Path) -> tuple[Spec, Catalogue]:
-    spec = read_spec(Path(path))
-    return spec, catalogue_of(spec)
+def _files(spec: Spec) -> tuple[Catalogue, Mapping[str, str], Mapping[str, int]]:
+    """Every file that a spec names: catalogue with prices, land-pattern names, parts on hand.
+
+    Raises
+    ------
+    InputError
+        With the problems of all of them.
+    """
+    folder, problems = Path(spec.file).parent, list[Problem]()
+    catalogue: Catalogue | None = None
+    names: Mapping[str, str] = {}
+    stock: Mapping[str, int] = {}
+    with _collecting(problems):
+        catalogue = catalogue_of(spec)
+    if spec.build.land_patterns:
+        known = {part.land_pattern for part in catalogue.parts.values()} if catalogue else None
+        with _collecting(problems):
+            names = read_land_patterns(folder / spec.build.land_patterns, known)
+    if spec.order.stock:
+        with _collecting(problems):
+            stock = read_stock(folder / spec.order.stock, catalogue.parts if catalogue else None)
+    if catalogue is None or problems:
+        raise InputError(problems)
+    return catalogue, names, stock
+
+
+@contextmanager
+def _collecting(problems: list[Problem]) -> Iterator[None]:
+    """Keep the problems of one file and go on with the next."""
+    try:
+        yield
+    except InputError as error:
+        problems += error.problems

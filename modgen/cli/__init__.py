@@ -7,6 +7,8 @@ it, so that help and errors come at once.
 from __future__ import annotations
 
 import argparse
+import errno
+import io
 import os
 import sys
 import traceback
@@ -20,7 +22,7 @@ CLEAN, FINDINGS, UNUSABLE, INTERNAL = 0, 1, 2, 3
 _EXIT = """exit status:
   0  clean
   1  findings of level error (build still writes the pack, marked not cleared for ordering)
-  2  the input cannot be used; nothing was written
+  2  an input cannot be used; nothing was written for it
   3  internal error
 """
 
@@ -72,6 +74,10 @@ def main(arguments: Sequence[str] | None = None) -> int:
         return int(stop.code or 0)
     from modgen.cli import commands
 
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):
+            # a terminal or pipe that knows no Ω gets a question mark, not a crash
+            stream.reconfigure(errors="replace")
     try:
         status: int = getattr(commands, options.command)(options)
         sys.stdout.flush()
@@ -82,11 +88,20 @@ def main(arguments: Sequence[str] | None = None) -> int:
         # whoever read the output has gone; let the interpreter not complain at exit
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         return CLEAN
+    except OSError as error:
+        if error.errno != errno.ENOSPC:
+            return _internal(error)
+        print("modgen: no room left on the device that the output goes to", file=sys.stderr)
+        return UNUSABLE
     except KeyboardInterrupt:
         print("modgen: stopped; nothing was changed", file=sys.stderr)
         return 130
     except Exception as error:
-        traceback.print_exc(file=sys.stderr)
-        print(f"modgen: internal error: {error}\nThis is a fault of modgen, not of your spec.", file=sys.stderr)
-        return INTERNAL
+        return _internal(error)
     return status
+
+
+def _internal(error: Exception) -> int:
+    traceback.print_exception(error, file=sys.stderr)
+    print(f"modgen: internal error: {error}\nThis is a fault of modgen, not of your spec.", file=sys.stderr)
+    return INTERNAL

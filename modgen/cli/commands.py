@@ -7,8 +7,12 @@ import json
 import sys
 import time
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from modgen.problems import InputError, Place, Problem
+
+if TYPE_CHECKING:
+    from modgen.spec import Spec
 
 CLEAN, FINDINGS, UNUSABLE = 0, 1, 2
 
@@ -36,10 +40,14 @@ def build(options: argparse.Namespace) -> int:
     from modgen.cli.screen import summary
 
     status = CLEAN
+    written: dict[str, str] = {}
     for n, path in enumerate(options.specs):
         progress = _Progress(path)
         try:
             job = run(path, progress)
+            before = written.setdefault(job.spec.slug, path)
+            if before != path:
+                raise _same_folder(job.spec, before)
             folder = write(job, options.out, progress)
         except InputError as error:
             progress.clear()
@@ -52,6 +60,11 @@ def build(options: argparse.Namespace) -> int:
         print(summary(job, folder), end="")
         status = max(status, CLEAN if job.report.cleared else FINDINGS)
     return status
+
+
+def _same_folder(spec: Spec, before: str) -> InputError:
+    what = f"module '{spec.module}' has the folder of another module of this run, '{spec.slug}'"
+    return InputError([Problem(spec.place("module"), what, f"{before} was written there", "give one another name")])
 
 
 def check(options: argparse.Namespace) -> int:
@@ -73,6 +86,8 @@ def check(options: argparse.Namespace) -> int:
         print(json.dumps(findings_json(report), indent=2, ensure_ascii=False))
     else:
         print(report_text(report), end="")
+        if options.netlist:
+            print("judged by the rules; parts and connections were not compared with the spec one by one")
     return CLEAN if report.cleared else FINDINGS
 
 

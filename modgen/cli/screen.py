@@ -6,7 +6,7 @@ import shutil
 from collections.abc import Iterable, Sequence
 from pathlib import Path
 
-from modgen.analysis.model import ChannelGlide, Interval
+from modgen.analysis.model import AccuracyBudget, ChannelGlide, Interval
 from modgen.outputs.bom import short_ranges
 from modgen.outputs.model import Job
 from modgen.rules import Finding, Report, subjects
@@ -26,6 +26,9 @@ _ROLES = (
     "reverse-polarity",
     "reservoir",
     "decoupling",
+    "power-header",
+    "input-jack",
+    "output-jack",
 )
 
 
@@ -57,9 +60,9 @@ def summary(job: Job, folder: Path) -> str:
 
 def report_text(report: Report) -> str:
     """A report without its module: every rule, then the findings, then the verdict."""
-    rows = [("rule", "looked at", "least margin", "where")]
+    rows = [("rule", "checks", "least margin", "where")]
     for checked in report.checked:
-        margin = "" if checked.worst_margin is None else f"{checked.worst_margin:.0%}"
+        margin = "" if checked.worst_margin is None else _share(round(checked.worst_margin, 2))
         where = checked.worst if checked.judged else f"not judged: {checked.not_judged}"
         rows.append((checked.rule, str(checked.instances), margin, where))
     return "\n".join([*_table(rows), "", *_findings(report.findings), verdict(report)]) + "\n"
@@ -86,18 +89,17 @@ def _glide(job: Job) -> list[str]:
         by_values.setdefault((channel.shortest, channel.longest, channel.inside), []).append(channel)
     for (shortest, longest, inside), channels in by_values.items():
         name = f"channels {_runs([c.channel for c in channels])}" if len(by_values) > 1 else "every channel"
-        lines.append(
-            f"  {name}: {_time(shortest.nominal)} to {_time(longest.nominal)} nominal; worst case "
-            f"{_time(shortest.low)}..{_time(shortest.high)} to {_time(longest.low)}..{_time(longest.high)}; "
-            f"{inside:.1%} of boards cover it"
-        )
-    return lines
+        lines += [
+            f"  {name}: fast end {_spread(shortest)}, slow end {_spread(longest)}",
+            f"  {' ' * len(name)}  {_share(inside)} of such channels cover what is asked",
+        ]
+    return [*lines, f"  {_share(job.analyses.boards_inside)} of boards cover it on every channel"]
 
 
 def _errors(job: Job) -> list[str]:
     budget = job.analyses.accuracy
     return [
-        f"scale {1200 * budget.scale_worst:.3g} of {1200 * budget.scale_budget:.3g} cents per octave, offset "
+        f"scale {_scale(budget, job.spec.signal.pitch)}, offset "
         f"{format_quantity(budget.offset_worst, 'voltage')} of {format_quantity(budget.offset_budget, 'voltage')}, "
         "worst case at 25 °C",
         *(
@@ -116,19 +118,21 @@ def _values(job: Job) -> list[str]:
             if part.field("role") == role:
                 keys.setdefault(part.field("part"), []).append(part.ref)
         for key, refs in keys.items():
-            rows.append((role, job.netlist.by_ref[refs[0]].value, key, short_ranges(refs)))
+            value = job.netlist.by_ref[refs[0]].value
+            rows.append((role, value if value != key else "", key, short_ranges(refs)))
     return _table(rows)
 
 
 def _margins(report: Report) -> list[str]:
-    rows = [("subject", "looked at", "least margin", "where")]
+    rows = [("subject", "checks", "least margin", "where")]
     of = subjects()
     for subject in dict.fromkeys(of.values()):
         mine = [c for c in report.checked if of.get(c.rule) == subject]
         rated = [(c.worst_margin, c.rule, c.worst) for c in mine if c.worst_margin is not None]
         margin, rule, worst = min(rated, default=(None, "", ""))
         seen = str(sum(c.instances for c in mine))
-        rows.append((subject, seen, "" if margin is None else f"{margin:.0%}", f"{rule}: {worst}" if rule else ""))
+        left = "" if margin is None else _share(round(margin, 2))
+        rows.append((subject, seen, left, f"{rule}: {worst}" if rule else ""))
     return _table(rows)
 
 
@@ -152,6 +156,20 @@ def _table(rows: Sequence[tuple[str, ...]]) -> list[str]:
         text = "  " + "  ".join(cell.ljust(width) for cell, width in zip(row, [*widths, 0], strict=True)).rstrip()
         lines.append(text if len(text) <= room else text[: room - 1] + "…")
     return lines
+
+
+def _spread(interval: Interval) -> str:
+    return f"{_time(interval.nominal)} ({_time(interval.low)} to {_time(interval.high)})"
+
+
+def _share(share: float) -> str:
+    return format_quantity(share, "ratio")
+
+
+def _scale(budget: AccuracyBudget, pitch: bool) -> str:
+    if pitch:
+        return f"{1200 * budget.scale_worst:.3g} of {1200 * budget.scale_budget:.3g} cents per octave"
+    return f"{_share(budget.scale_worst)} of {_share(budget.scale_budget)}"
 
 
 def _runs(numbers: Sequence[int]) -> str:

@@ -11,7 +11,7 @@ from dataclasses import dataclass
 
 from modgen.catalogue import Catalogue
 from modgen.catalogue.records import Amplifier
-from modgen.design import refusals
+from modgen.design import practice, refusals
 from modgen.design.network import Grid, Network, Room, arrangements, controls, in_steps, isolators
 from modgen.design.stage import Stage, stages_of
 from modgen.spec.model import Spec
@@ -69,7 +69,9 @@ def choose(spec: Spec, catalogue: Catalogue) -> Outcome:
         else:
             refused.append((name, why or refusals.network_fault(grid, _roomiest(spec, stages))))
     if not able:
-        raise refusals.no_amplifier(spec, refused)
+        raise refusals.no_amplifier(
+            spec, refused, lambda other: any(stages_of(other, catalogue, forms)[0] for forms in types.values())
+        )
     if not found:
         raise refusals.no_network(spec, grid, _roomiest(spec, able), refused)
     found.sort(key=lambda candidate: candidate.key)
@@ -89,14 +91,20 @@ def _types(spec: Spec, catalogue: Catalogue) -> dict[str, list[Amplifier]]:
     """Amplifier types with the forms that can be mounted, by name; only the asked one unless it is left open."""
     asked = spec.build.amplifier
     every = catalogue.of(Amplifier)
-    names = {a.type for a in every} | {a.key for a in every} | {a.order_code for a in every if a.order_code}
-    if asked != "auto" and asked not in names:
-        raise refusals.unknown_amplifier(spec, names)
-    wanted = [a for a in every if asked == "auto" or asked in (a.type, a.key, a.order_code)]
+    names = {a.key: _names(a) for a in every}
+    wanted = [a for a in every if asked == "auto" or asked.lower() in (name.lower() for name in names[a.key])]
+    if not wanted:
+        raise refusals.unknown_amplifier(spec, {name for known in names.values() for name in known})
     fit = [a for a in wanted if a.mount == spec.build.mount]
     if not fit:
         raise refusals.wrong_mount(spec, wanted)
     return {name: [a for a in fit if a.type == name] for name in sorted({a.type for a in fit})}
+
+
+def _names(amplifier: Amplifier) -> tuple[str, ...]:
+    """What an amplifier may be called: its type, its type number without the package, its key, its order code."""
+    stem = amplifier.key.partition("-")[0].upper()
+    return tuple(name for name in (amplifier.type, stem, amplifier.key, amplifier.order_code) if name)
 
 
 def _room(spec: Spec, stage: Stage) -> Room:
@@ -105,11 +113,16 @@ def _room(spec: Spec, stage: Stage) -> Room:
     The isolating resistor alone must keep a step over the whole span within the current that the buffer
     guarantees: a control can be turned to nothing, and a buffer that limits makes the glide slower than computed.
     """
+    amplifier = stage.amplifier
+    drive = amplifier.short_circuit_least
+    if amplifier.sink_near_negative and spec.rails.single and spec.signal.low < practice.JUNCTION:
+        # the last part of a falling glide is driven by what the output can sink next to its rail
+        drive = amplifier.sink_near_negative
     return Room(
-        bias=stage.amplifier.bias_max,
+        bias=amplifier.bias_max,
         scale=spec.accuracy.scale - stage.scale,
         offset=spec.accuracy.offset - stage.offset,
-        isolating=(spec.signal.high - spec.signal.low) / stage.amplifier.short_circuit_least,
+        isolating=(spec.signal.high - spec.signal.low) / drive,
     )
 
 

@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import difflib
-from collections.abc import Iterable, Sequence
+import math
+from collections.abc import Callable, Iterable, Sequence
+from dataclasses import replace
 
 from modgen.catalogue import Catalogue
 from modgen.catalogue.records import Amplifier, Capacitor
@@ -25,9 +27,8 @@ def _hint(name: str, known: Iterable[str]) -> str:
 
 def _list(heading: str, reasons: Sequence[tuple[str, str]]) -> str:
     """A heading and one reason a line, set under the message's own indent."""
-    if len(reasons) == 1:
-        return " ".join(reasons[0])
-    return heading + "".join(f"\n         {name} {reason}" for name, reason in reasons)
+    lines = [f"{name}: {reason}" for name, reason in reasons]
+    return lines[0] if len(lines) == 1 else "\n         ".join([f"{heading}:", *lines])
 
 
 def unknown_amplifier(spec: Spec, known: Iterable[str]) -> InputError:
@@ -63,7 +64,7 @@ def no_capacitor(spec: Spec, catalogue: Catalogue, refused: dict[str, str]) -> I
         return refusal(spec, "build.capacitor", f"capacitor family '{asked}' is not in the catalogue", "", fix)
     kind = "capacitor" if asked == "auto" else asked
     what = f"no {kind} in the catalogue can be the glide capacitor"
-    why = _list("those there are cannot stand there:", sorted(refused.items()))
+    why = _list("those there are cannot stand there", sorted(refused.items()))
     why = why if refused else f"none is made for {spec.build.mount} mounting"
     return refusal(spec, "build.capacitor", what, why, "leave build.capacitor at auto, or name a film or C0G family")
 
@@ -86,33 +87,40 @@ def network_fault(grid: Grid, room: Room) -> str:
     )
 
 
-def no_amplifier(spec: Spec, refused: Sequence[tuple[str, str]]) -> InputError:
-    """No type can do it, whatever the glide network."""
+def no_amplifier(spec: Spec, refused: Sequence[tuple[str, str]], fits: Callable[[Spec], bool]) -> InputError:
+    """No type can do it, whatever the glide network; ``fits`` tells whether some type can do another spec."""
     named = spec.build.amplifier != "auto"
     what = (
         f"amplifier '{spec.build.amplifier}' does not work in this module"
         if named
         else "no amplifier in the catalogue works on these rails with this signal"
     )
+    span = _widest_span(spec, fits)
+    key = "build.amplifier" if named else "rails"
+    if span and not named:
+        key = "signal.span" if "signal.span" in dict(spec.places) else key
     fix = (
-        "change the rails, the signal's span, the accuracy budget or the amplifier "
-        "so that one of these reasons falls away"
-    )
-    return refusal(spec, "build.amplifier" if named else "rails", what, _list("every type is refused:", refused), fix)
+        f"a span of {span} can be had here; or change " if span else "change the signal's span, the accuracy budget, "
+    ) + "the rails or the amplifier"
+    return refusal(spec, key, what, _list("every type is refused", refused), fix)
+
+
+def _widest_span(spec: Spec, fits: Callable[[Spec], bool]) -> str:
+    """The widest span of the same shape that some amplifier can do, in steps of a twentieth; empty when none."""
+    for twentieths in range(19, 3, -1):
+        # two figures, downwards: it must still fit as it is written
+        low, high = (_down(end * twentieths / 20) for end in (spec.signal.low, spec.signal.high))
+        if high > low and fits(replace(spec, signal=replace(spec.signal, low=low, high=high))):
+            return f"±{high:g} V" if low == -high else f"{low:g} V to {high:g} V"
+    return ""
+
+
+def _down(value: float) -> float:
+    return math.trunc(value * 10) / 10
 
 
 def no_network(spec: Spec, grid: Grid, room: Room, refused: Sequence[tuple[str, str]]) -> InputError:
     """Some type would do, but no network reaches the range or keeps the budgets with it."""
-    if (grid.isolating >= room.isolating).any():
-        stated = dict(spec.places)
-        key = next((k for k in ("accuracy", "build.capacitor", "build.amplifier") if k in stated), "glide.longest")
-        return refusal(
-            spec,
-            key,
-            "the accuracy budget cannot be kept over the glide range",
-            _list("every type is refused:", refused),
-            "allow more error, ask for a shorter longest glide, or another amplifier or capacitor",
-        )
     longest, shortest = grid.nearest(room)
     glide = spec.glide
     reach = []
@@ -120,8 +128,23 @@ def no_network(spec: Spec, grid: Grid, room: Room, refused: Sequence[tuple[str, 
         reach.append(f"{_time(glide.shortest)} to {_time(longest)}")
     if shortest is not None and shortest < glide.longest:
         reach.append(f"{_time(shortest)} to {_time(glide.longest)}")
+    near = f"the nearest that can be had: {' or '.join(reach)}" if reach else ""
+    if (grid.isolating >= room.isolating).any():
+        stated = dict(spec.places)
+        key = next((k for k in ("accuracy", "build.capacitor", "build.amplifier") if k in stated), "glide.longest")
+        return refusal(
+            spec,
+            key,
+            "the accuracy budget cannot be kept over the glide range",
+            _list("every type is refused", refused) + (f"\n         {near}" if near else ""),
+            "allow more error, ask for a range that can be had, or another amplifier or capacitor",
+        )
     if longest is None and shortest is None:
-        blocks = "neither end can be reached"
+        needed = format_quantity(room.isolating, "resistance")
+        blocks = (
+            f"what the amplifier can drive asks for an isolating resistor of {needed} at least, and with that "
+            "neither end can be reached"
+        )
     elif longest is None:
         blocks = "the shortest glide blocks: no capacitor is small enough for any control and resistor"
     elif shortest is None:
@@ -138,7 +161,7 @@ def no_network(spec: Spec, grid: Grid, room: Room, refused: Sequence[tuple[str, 
         spec,
         "glide.longest",
         f"a glide of {asked} ({glide.measure}) cannot be had {cover} from the catalogue",
-        blocks + (f"; the nearest that can be had: {' or '.join(reach)}" if reach else ""),
+        f"{blocks}; {near}" if near else blocks,
         "change glide.shortest or glide.longest to a range that can be had, or add parts with build.catalogue",
     )
 

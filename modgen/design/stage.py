@@ -123,7 +123,7 @@ def terminators(spec: Spec, catalogue: Catalogue) -> Iterator[tuple[Resistor, fl
     def error(r: Resistor) -> float:
         return loading_error(spec.signal.source, r.resistance * (1 - r.tolerance) / parallel)
 
-    shares = practice.SOURCE_SHARES
+    shares: tuple[float, ...] = practice.SOURCE_SHARES
     if all(error(r) > shares[0] * spec.accuracy.scale for r in fit):
         shares = (practice.MOST_SOURCE_SHARE,)
     for share in shares:
@@ -258,11 +258,14 @@ def stages_of(spec: Spec, catalogue: Catalogue, forms: Sequence[Amplifier]) -> t
 
 def _offset(spec: Spec, a: Amplifier, series: Resistor, terminator: Resistor, output: OutputStage) -> float:
     """Offset of both buffers without the glide network's part [V]."""
-    source = parallel(spec.signal.source, terminator.resistance)
+    # inputs that share a socket, or are chained, put their bias through the same source
+    fed = spec.channels if spec.normalling == "chain" else spec.channels - spec.jacks.inputs + 1
+    source = fed * parallel(spec.signal.source, terminator.resistance)
     through = source + series.resistance * (1 + series.tolerance)
     if output.feedback is not None:
         through += output.feedback.resistance * (1 + output.feedback.tolerance)
-    return 2 * a.offset_max + a.bias_max * through
+    floor = max(0.0, a.swing_low - spec.signal.low) if spec.rails.single else 0.0
+    return 2 * a.offset_max + a.bias_max * through + floor
 
 
 def _budget_fault(

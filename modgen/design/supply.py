@@ -85,20 +85,22 @@ def headroom(amplifier: Amplifier, spec: Spec, drop: float, drive: float) -> tup
     top = ends.positive_low - drop
     high, low = spec.signal.high, spec.signal.low
     need_high, need_low = high * (1 + drive) if high > 0 else high, low * (1 + drive) if low < 0 else low
+    # an empty socket puts 0 V on the input, whatever the span is
+    rest_high, rest_low = max(high, 0.0), min(low, 0.0)
     sides = [
-        (top - amplifier.common_mode_high - high, "the input range at the positive rail"),
+        (top - amplifier.common_mode_high - rest_high, "the input range at the positive rail"),
         (top - amplifier.swing_high - need_high, "the output swing at the positive rail"),
     ]
     if spec.rails.single:
         beneath = [
-            (low - amplifier.common_mode_low, "the input range at 0 V"),
+            (rest_low - amplifier.common_mode_low, "the input range at 0 V"),
             (need_low + spec.accuracy.offset - amplifier.swing_low, "the output swing at 0 V"),
         ]
         sides += [side for side in beneath if side[0] < 0]
     else:
         bottom = ends.negative_low + drop
         sides += [
-            (low - (bottom + amplifier.common_mode_low), "the input range at the negative rail"),
+            (rest_low - (bottom + amplifier.common_mode_low), "the input range at the negative rail"),
             (need_low - (bottom + amplifier.swing_low), "the output swing at the negative rail"),
         ]
     return min(sides)

@@ -6,6 +6,7 @@ that fails leaves what was there. Runs of the same module wait for each other.
 
 from __future__ import annotations
 
+import json
 import os
 import re
 import secrets
@@ -76,7 +77,7 @@ def write_pack(job: Job, out: Path, files: Mapping[str, bytes]) -> Path:
     made = _make_parent(out)
     try:
         with _alone(out) as alone:
-            _check_target(target, files)
+            _check_target(target, files, job.spec.module)
             if alone:
                 _clear_litter(target)
             _replace(target, files)
@@ -123,8 +124,8 @@ def _make_parent(out: Path) -> bool:
     return True
 
 
-def _check_target(target: Path, files: Mapping[str, bytes]) -> None:
-    """Refuse to replace anything that is not a pack."""
+def _check_target(target: Path, files: Mapping[str, bytes], module: str) -> None:
+    """Refuse to replace anything that is not a pack of this module."""
     if target.is_symlink():
         raise _refusal(
             target,
@@ -149,6 +150,14 @@ def _check_target(target: Path, files: Mapping[str, bytes]) -> None:
             "writing there would delete what it holds",
             "move it away, or choose another folder with --out",
         )
+    owner = _owner(target / MARK)
+    if owner and owner != module:
+        raise _refusal(
+            target,
+            f"is the pack of another module, '{owner}'",
+            f"the name '{module}' makes the same folder name",
+            "give one of the two another name, remove that folder, or choose another one with --out",
+        )
     # what hides is litter of file managers and editors' locks; ~$ is a spreadsheet's lock
     foreign = [n for n in names if n not in OURS and n not in files and not n.startswith((".", "~"))]
     if foreign:
@@ -158,6 +167,17 @@ def _check_target(target: Path, files: Mapping[str, bytes]) -> None:
             "a pack is replaced whole, so it would be deleted",
             "move it out of the pack",
         )
+
+
+def _owner(mark: Path) -> str:
+    """The module a pack belongs to; empty when that cannot be read, as in a damaged pack."""
+    try:
+        page = json.loads(mark.read_bytes())
+    except (OSError, ValueError):
+        return ""
+    spec = page.get("spec") if isinstance(page, dict) else None
+    module = spec.get("module") if isinstance(spec, dict) else None
+    return module if isinstance(module, str) else ""
 
 
 @contextmanager

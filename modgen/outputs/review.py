@@ -20,8 +20,14 @@ if TYPE_CHECKING:
 #: Unit to the kind of quantity that is written in it.
 _KINDS = {unit: kind for kind, unit in UNITS.items()}
 
-#: Kinds of evidence from the firmest to none; words for a heading.
-_EVIDENCE = ("published document", "own file", "common practice", "memory", "invented")
+#: Kinds of evidence from the firmest to none, with the heading of each; a file of one's own only where there is one.
+_EVIDENCE = {
+    "published document": "#Published",
+    "own file": "#Own file",
+    "common practice": "#Practice",
+    "memory": "#Memory",
+    "invented": "#Invented",
+}
 
 
 def review_html(job: Job) -> bytes:
@@ -224,17 +230,19 @@ def evidence_table(job: Job) -> Table:
     """
     used = {part.ref for part in job.netlist.parts}
     records = {part.record.key: part.record for part in job.design.parts if part.ref in used}
+    found = {evidence.kind for record in records.values() for _, evidence in record.evidence}
+    kinds = [kind for kind in _EVIDENCE if kind != "own file" or kind in found]
     rows = []
     for key in sorted(records):
         by_kind: dict[str, list[str]] = {}
         for figure, evidence in records[key].evidence:
             by_kind.setdefault(evidence.kind, []).append(figure)
-        counts = tuple(str(len(by_kind.get(kind, ())) or NOTHING) for kind in _EVIDENCE)
+        counts = tuple(str(len(by_kind.get(kind, ())) or NOTHING) for kind in kinds)
         memory = ", ".join(sorted(figure.replace("_", " ") for figure in by_kind.get("memory", ())))
         rows.append((key, *counts, memory or "none"))
     return Table(
         "Figures by what they rest on",
-        columns("!Record", "#Published", "#Own file", "#Practice", "#Memory", "#Invented", "Figures from memory"),
+        columns("!Record", *(_EVIDENCE[kind] for kind in kinds), "Figures from memory"),
         tuple(rows),
         note="Invented figures are example prices. Check figures from memory against the maker's sheet "
         "before a large order.",

@@ -67,7 +67,8 @@ def write_bom_csv(job: Job) -> bytes:
     Parameters
     ----------
     job : Job
-        The module, built and judged; ``spec.order`` says for how many boards and with what spares, ``stock`` what is taken off.
+        The module, built and judged; ``spec.order`` says for how many boards and with what spares, ``stock`` what
+        is on hand.
 
     Returns
     -------

@@ -209,9 +209,9 @@ class Signal:
             "input impedance of what an output drives",
             default="100 kΩ",
             dimension="resistance",
-            least=0.0,
+            # the output swing of every amplifier in the catalogue is the one into 10 kohm
+            least=10e3,
             most=1e12,
-            above=True,
         ),
     )
     pitch: bool = field(

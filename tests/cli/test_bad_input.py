@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+import subprocess
 import sys
 from collections.abc import Callable
 from pathlib import Path
@@ -114,3 +115,45 @@ def test_unknown_command_and_option(modgen: Callable) -> None:
     assert modgen().status == 2
     assert modgen("--help").status == 0
     assert modgen("--version").out == "modgen 0.1.0\n"
+
+
+def test_two_modules_with_one_folder_name(modgen: Callable, tmp_path: Path, write_spec: Callable) -> None:
+    """Neither in one run nor in two may one module take another's folder in silence."""
+    write_spec("module: Codes", name="one.yaml")
+    write_spec("module: Codes µ", name="two.yaml")
+    ran = modgen("build", "one.yaml", "two.yaml")
+    assert ran.status == 2
+    assert ran.err == (
+        "two.yaml:1:1: error: module 'Codes µ' has the folder of another module of this run, 'codes'\n"
+        "    why: one.yaml was written there\n"
+        "    fix: give one another name\n"
+    )
+    kept = (tmp_path / "output" / "codes" / "design.json").read_bytes()
+    ran = modgen("build", "two.yaml")
+    assert ran.status == 2
+    assert "is the pack of another module, 'Codes'" in ran.err
+    assert (tmp_path / "output" / "codes" / "design.json").read_bytes() == kept
+
+
+def test_output_that_cannot_take_every_letter() -> None:
+    """A pipe with an old code page gets question marks, not a crash."""
+    environment = os.environ | {"PYTHONIOENCODING": "ascii"}
+    ran = subprocess.run(
+        [sys.executable, "-m", "modgen", "catalogue", "metal-film-0207-4k7"],
+        env=environment,
+        capture_output=True,
+        text=True,
+        check=False,
+    )
+    assert (ran.returncode, ran.stderr) == (0, "")
+    assert "4.7 k?" in ran.stdout
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="no device that is always full")
+def test_output_to_a_full_device() -> None:
+    with open("/dev/full", "w") as full:
+        ran = subprocess.run(
+            [sys.executable, "-m", "modgen", "rules"], stdout=full, stderr=subprocess.PIPE, text=True, check=False
+        )
+    assert ran.returncode == 2
+    assert ran.stderr.startswith("modgen: no room left on the device that the output goes to")

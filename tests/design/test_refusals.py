@@ -58,11 +58,12 @@ def test_the_nearest_range_can_be_had(catalogue: Catalogue, spec_of: Callable, r
 def test_signal_too_large_for_the_rails(refused: Callable) -> None:
     problem = refused("signal: {span: ±10 V}")
     assert problem.what == "no amplifier in the catalogue works on these rails with this signal"
-    assert at(problem) == (4, 1)
-    reasons = {line.split()[0]: line.strip() for line in problem.why.splitlines()[1:]}
-    assert reasons["TL07x"] == "TL07x the input range at the negative rail is 2.92 V short behind 1n5818"
+    assert at(problem) == (6, 10)
+    assert problem.fix == "a span of ±8.5 V can be had here; or change the rails or the amplifier"
+    reasons = {line.split(":")[0].strip(): line.strip() for line in problem.why.splitlines()[1:]}
+    assert reasons["TL07x"] == "TL07x: the input range at the negative rail is 2.92 V short behind 1n5818"
     assert (
-        reasons["MCP600x"] == "MCP600x withstands 7 V across its supply pins; the rails reach 25.2 V at 5 % tolerance"
+        reasons["MCP600x"] == "MCP600x: withstands 7 V across its supply pins; the rails reach 25.2 V at 5 % tolerance"
     )
 
 
@@ -70,14 +71,14 @@ def test_low_voltage_type_on_high_rails(refused: Callable) -> None:
     problem = refused("build: {amplifier: TLV915x, mount: surface}")
     assert at(problem) == (6, 9)
     assert problem.what == "amplifier 'TLV915x' does not work in this module"
-    assert problem.why == "TLV915x withstands 20 V across its supply pins; the rails reach 25.2 V at 5 % tolerance"
+    assert problem.why == "TLV915x: withstands 20 V across its supply pins; the rails reach 25.2 V at 5 % tolerance"
 
 
 def test_bipolar_input_behind_a_large_control(refused: Callable) -> None:
     problem = refused("build: {amplifier: NE5532}")
     assert problem.what == "the accuracy budget cannot be kept over the glide range"
     assert (
-        "NE5532 its bias of up to 800 nA and the capacitor's leakage through the control are an offset of "
+        "NE5532: its bias of up to 800 nA and the capacitor's leakage through the control are an offset of "
         in problem.why
     )
 
@@ -87,9 +88,9 @@ def test_bipolar_input_behind_a_large_control(refused: Callable) -> None:
     [
         (
             ("build: {capacitor: electrolytic}", "signal: {pitch: true}"),
-            "electrolytic leaks tens to hundreds of cents through the control",
+            "electrolytic: leaks tens to hundreds of cents through the control",
         ),
-        (("build: {capacitor: x7r}",), "x7r is piezoelectric, and its capacitance changes with the voltage on it"),
+        (("build: {capacitor: x7r}",), "x7r: is piezoelectric, and its capacitance changes with the voltage on it"),
     ],
 )
 def test_dielectrics_that_cannot_glide(refused: Callable, lines: tuple[str, ...], why: str) -> None:
@@ -102,16 +103,32 @@ def test_dielectrics_that_cannot_glide(refused: Callable, lines: tuple[str, ...]
 def test_leaking_capacitor_is_never_accepted_in_silence(refused: Callable) -> None:
     problem = refused("build: {capacitor: electrolytic}")
     assert problem.what == "the accuracy budget cannot be kept over the glide range"
-    assert "TL07x its bias of up to 200 pA and the capacitor's leakage through the control are an offset" in problem.why
+    assert (
+        "TL07x: its bias of up to 200 pA and the capacitor's leakage through the control are an offset" in problem.why
+    )
 
 
 def test_unknown_names(refused: Callable) -> None:
-    problem = refused("build: {amplifier: TL07}")
-    assert problem.what == "amplifier 'TL07' is not in the catalogue"
+    problem = refused("build: {amplifier: TL07y}")
+    assert problem.what == "amplifier 'TL07y' is not in the catalogue"
     assert problem.fix.startswith("did you mean 'TL07x'? ")
     problem = refused("build: {capacitor: film-pp-bx}")
     assert problem.what == "capacitor family 'film-pp-bx' is not in the catalogue"
     assert problem.fix.startswith("did you mean 'film-pp-box")
+
+
+@pytest.mark.parametrize(
+    ("name", "packages"),
+    [
+        ("tl07x", {"tl074-dip14"}),
+        ("TL072", {"tl072-dip8"}),
+        ("tl072-dip8", {"tl072-dip8"}),
+        ("TL074CN", {"tl074-dip14"}),
+    ],
+)
+def test_names_an_amplifier_goes_by(catalogue: Catalogue, spec_of: Callable, name: str, packages: set[str]) -> None:
+    values = make_design(spec_of("channels: 4", "jacks: 8", f"build: {{amplifier: {name}}}"), catalogue).values
+    assert {p.key for p in values.packages} == packages
 
 
 def test_type_not_sold_for_the_mount(refused: Callable) -> None:
@@ -124,7 +141,7 @@ def test_single_supply_with_a_type_that_cannot_reach_0v(refused: Callable) -> No
     problem = refused(
         "rails: {positive: 12 V, negative: 0 V}", "signal: {span: 0 V to 5 V}", "build: {amplifier: TL07x}"
     )
-    assert problem.why == "TL07x the input range at 0 V is 4 V short behind 1n5819"
+    assert problem.why == "TL07x: the input range at 0 V is 4 V short behind 1n5819"
 
 
 @pytest.mark.parametrize(
@@ -136,7 +153,31 @@ def test_single_supply_with_a_type_that_cannot_reach_0v(refused: Callable) -> No
         ("rails: {positive: 12 V, negative: 0 V}", "signal: {span: 0 V to 5 V}"),
         ("rails: {positive: 12 V, negative: 0 V}", "signal: {span: 0 V to 5 V}", "build: {mount: surface}"),
         ("rails: {positive: 9 V, negative: -9 V}", "signal: {span: ±3 V}"),
+        # the span that the refusal of ±10 V offers
+        ("signal: {span: ±8.5 V}",),
     ],
 )
 def test_rails_that_can_be_had(catalogue: Catalogue, spec_of: Callable, lines: tuple[str, ...]) -> None:
     assert make_design(spec_of(*lines), catalogue).parts
+
+
+def test_output_that_barely_sinks_next_to_its_rail(refused: Callable) -> None:
+    """Falling to 0 V on a single supply the LM358 sinks microamperes: no glide resistor is large enough for a fast end."""
+    problem = refused(
+        "rails: {positive: 12 V, negative: 0 V}", "signal: {span: 0 V to 5 V}", "build: {amplifier: LM358}"
+    )
+    assert problem.why == (
+        "what the amplifier can drive asks for an isolating resistor of 417 kΩ at least, and with that "
+        "neither end can be reached"
+    )
+
+
+def test_span_off_0v_still_meets_0v_when_unplugged(refused: Callable) -> None:
+    """An empty socket is at 0 V: a type that does not reach it may not be taken, however high the span begins."""
+    problem = refused(
+        "rails: {positive: 12 V, negative: 0 V}",
+        "signal: {span: 4 V to 6 V}",
+        "accuracy: {offset: 100 mV}",
+        "build: {amplifier: TL07x}",
+    )
+    assert problem.why == "TL07x: the input range at 0 V is 4 V short behind 1n5819"

@@ -1,5 +1,6 @@
 import csv
 import io
+from dataclasses import replace
 
 import pytest
 
@@ -37,6 +38,7 @@ def test_a_whole_row(make):
         "Boards": "25",
         "Needed": "50",
         "Spares": "3",
+        "In stock": "0",
         "To order": "53",
         "Unit price": "0.7",
         "Line total": "37.10",
@@ -44,6 +46,14 @@ def test_a_whole_row(make):
         "Status": "cleared",
     }
     assert found["r-330"]["Unit price"] == found["r-330"]["Line total"] == "no price"
+
+
+def test_what_is_on_hand_is_not_ordered(make):
+    found = {row["Part"]: row for row in rows(replace(make(boards=25), stock={"c-1u-pp": 13, "jack-3.5": 500}))}
+    film = found["c-1u-pp"]  # 50 and 3 spare without the 13 on hand: below the break at 50
+    assert (film["In stock"], film["To order"], film["Unit price"], film["Line total"]) == ("13", "40", "0.9", "36.00")
+    assert (found["jack-3.5"]["In stock"], found["jack-3.5"]["To order"]) == ("500", "0")
+    assert found["tl072c"]["In stock"] == "0"
 
 
 def test_every_row_says_when_it_is_not_cleared(faulty):

@@ -81,6 +81,7 @@ def book(monkeypatch):
         catalogue={"a": resistor("a", (PriceBreak(1, 0.5), PriceBreak(100, 0.25))), "b": resistor("b", ())},
         netlist=Netlist("t", parts, (Net("n", (("R1", "1"),)),)),
         report=SimpleNamespace(cleared=True, findings=()),
+        stock={"b": 4},
     )
     return Book(write_bom_xlsx(job))
 
@@ -96,6 +97,7 @@ def test_sheets_text_numbers_and_formulas_by_the_standard(book):
     assert parts["B5"] == ("text", "R1-R5")
     assert parts["B6"] == ("text", "R6, R7")
     assert parts["C5"] == ("n", "5")
+    assert (parts["M5"], parts["M6"]) == (("n", "0"), ("n", "4"))
     assert parts["K5"] == ("formula", "boards*C5")
     assert book.sheets["Summary"]["A1"] == ("text", "Fish & <chips>: order")
     assert book.sheets["Summary"]["B5"] == ("n", "3")

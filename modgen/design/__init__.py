@@ -86,7 +86,7 @@ def _values(spec: Spec, catalogue: Catalogue, outcome: Outcome) -> Values:
         input_series=stage.input_series,
         isolating=network.isolating,
         control=network.control,
-        glide=network.capacitor.part,
+        glide=network.capacitor.parts[0],
         back_to_back=network.capacitor.back_to_back,
         output_series=stage.output.series,
         inside_loop=stage.output.inside,
@@ -96,6 +96,9 @@ def _values(spec: Spec, catalogue: Catalogue, outcome: Outcome) -> Values:
         reservoir=reservoir,
         decoupling=decoupling,
         idle_tie=stage.idle_tie,
+        glide_parallel=None
+        if network.capacitor.back_to_back or len(network.capacitor.parts) == 1
+        else network.capacitor.parts[1],
     )
 
 

@@ -7,14 +7,20 @@ a dearer stage leaves room for a cheaper network.
 from __future__ import annotations
 
 import math
+from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import islice
 
 from modgen.catalogue import Catalogue
 from modgen.catalogue.records import Amplifier
 from modgen.design import practice, refusals
-from modgen.design.network import Grid, Network, Room, arrangements, controls, in_steps, isolators
+from modgen.design.capacitors import Arrangement, arrangements, pairs
+from modgen.design.network import Grid, Network, Reach, Room, controls, in_steps, isolators
 from modgen.design.stage import Stage, stages_of
 from modgen.spec.model import Spec
+
+#: pairs of capacitors looked at together
+CHUNK = 256
 
 
 @dataclass(frozen=True)
@@ -56,35 +62,60 @@ def choose(spec: Spec, catalogue: Catalogue) -> Outcome:
     pots, fault = controls(spec, catalogue)
     if not pots:
         raise refusals.no_control(spec, fault)
-    grid = Grid(spec, caps, pots, isolators(spec, catalogue))
-    refused: list[tuple[str, str]] = []
-    found: list[Candidate] = []
-    able: list[Stage] = []
-    for name, forms in types.items():
-        stages, why = stages_of(spec, catalogue, forms)
-        able += stages
-        best = _best(spec, grid, stages)
-        if best is not None:
-            found.append(best)
-        else:
-            refused.append((name, why or refusals.network_fault(grid, _roomiest(spec, stages))))
+    resistors = isolators(spec, catalogue)
+    stages = {name: stages_of(spec, catalogue, forms) for name, forms in types.items()}
+    able = [stage for found, _ in stages.values() for stage in found]
     if not able:
         raise refusals.no_amplifier(
-            spec, refused, lambda other: any(stages_of(other, catalogue, forms)[0] for forms in types.values())
+            spec,
+            [(name, why) for name, (_, why) in stages.items()],
+            lambda other: any(stages_of(other, catalogue, forms)[0] for forms in types.values()),
         )
-    if not found:
-        raise refusals.no_network(spec, grid, _roomiest(spec, able), refused)
-    found.sort(key=lambda candidate: candidate.key)
-    first = found[0]
-    ranked = grid.ranked(_room(spec, first.stage))
+    singles = Grid(spec, caps, pots, resistors)
+    best = _best_of_each(spec, singles, stages)
+    reach = singles.reach(_roomiest(spec, able)) if not best else Reach()
+    source = singles
+    looked = len(caps)
+    if not best or min(candidate.key for candidate in best.values())[:2] > (False, False):
+        # a second part is taken only when one alone leaks, or bends the amplifier's bias, or does not reach
+        for chunk in _chunks(pairs(caps)):
+            grid = Grid(spec, chunk, pots, resistors)
+            looked += len(chunk)
+            for name, candidate in _best_of_each(spec, grid, stages).items():
+                if name not in best or candidate.key < best[name].key:
+                    best[name] = candidate
+                    source = grid
+            if not best:
+                reach = reach.wider(grid.reach(_roomiest(spec, able)))
+    refused = [
+        (name, why or refusals.network_fault(singles, _roomiest(spec, found)))
+        for name, (found, why) in stages.items()
+        if name not in best
+    ]
+    if not best:
+        raise refusals.no_network(spec, reach, _roomiest(spec, able), refused)
+    first, *others = sorted(best.values(), key=lambda candidate: candidate.key)
+    grid = singles if len(first.network.capacitor.parts) == 1 else source
     return Outcome(
         best=first,
-        others=tuple(found[1:]),
-        networks=tuple(ranked),
+        others=tuple(others),
+        networks=tuple(grid.ranked(_room(spec, first.stage))),
         refused=tuple(refused),
         dielectrics=tuple(sorted(dielectrics.items())),
-        combinations=len(caps) * len(pots) * len(grid.resistors) * len(types),
+        combinations=looked * len(pots) * len(resistors) * len(types),
     )
+
+
+def _chunks(every: Iterator[Arrangement]) -> Iterator[list[Arrangement]]:
+    """Pairs in portions, so that memory does not grow with their number."""
+    while chunk := list(islice(every, CHUNK)):
+        yield chunk
+
+
+def _best_of_each(spec: Spec, grid: Grid, stages: dict[str, tuple[list[Stage], str]]) -> dict[str, Candidate]:
+    """The best candidate of each type that has one."""
+    found = {name: _best(spec, grid, ways) for name, (ways, _) in stages.items()}
+    return {name: candidate for name, candidate in found.items() if candidate is not None}
 
 
 def _types(spec: Spec, catalogue: Catalogue) -> dict[str, list[Amplifier]]:
@@ -150,6 +181,7 @@ def _candidate(spec: Spec, stage: Stage, network: Network) -> Candidate:
     key = (
         network.leaky,
         network.biased,
+        len(network.capacitor.parts),
         network.oversized,
         stage.output.hot,
         _primary(spec, cost, error, area),
@@ -164,7 +196,7 @@ def _candidate(spec: Spec, stage: Stage, network: Network) -> Candidate:
         stage.type,
         *(p.key for p in stage.packages),
         stage.diode.key,
-        network.capacitor.part.key,
+        network.capacitor.key,
         network.control.key,
         network.isolating.key,
     )
@@ -180,15 +212,22 @@ def _candidate(spec: Spec, stage: Stage, network: Network) -> Candidate:
 
 def _best(spec: Spec, grid: Grid, stages: list[Stage]) -> Candidate | None:
     """The best candidate of one type: stages in rising order of what is preferred, until none can win."""
+    if not len(grid.index):
+        return None
     best: Candidate | None = None
+    fewest = min(len(arrangement.parts) for arrangement in grid.caps)
+    # stages that leave the same room, as those that differ in their diode do, have the same best network
+    networks: dict[Room, list[Network]] = {}
     ordered = sorted((s.output.hot, _primary(spec, *_stage_steps(spec, s)), n) for n, s in enumerate(stages))
     for hot, least, n in ordered:
-        if best is not None and best.key[:5] < (False, False, False, hot, least):
+        if best is not None and best.key[:6] < (False, False, fewest, False, hot, least):
             break
         stage = stages[n]
-        ranked = grid.ranked(_room(spec, stage), most=1)
-        if ranked:
-            candidate = _candidate(spec, stage, ranked[0])
+        room = _room(spec, stage)
+        if room not in networks:
+            networks[room] = grid.ranked(room, most=1)
+        for network in networks[room]:
+            candidate = _candidate(spec, stage, network)
             if best is None or candidate.key < best.key:
                 best = candidate
     return best

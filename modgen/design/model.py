@@ -60,6 +60,7 @@ class Values:
     reservoir: Capacitor
     decoupling: Capacitor
     idle_tie: Resistor | None = None
+    glide_parallel: Capacitor | None = None  # a second glide capacitor beside the first
 
 
 @dataclass(frozen=True)

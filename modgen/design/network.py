@@ -6,14 +6,16 @@ capacitor arrangements, controls and isolating resistors.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, TypeVar
 
 from modgen.catalogue import Catalogue
-from modgen.catalogue.records import Capacitor, Control, Resistor
+from modgen.catalogue.records import Control, Resistor
 from modgen.design import practice
-from modgen.design.supply import Ends, price_at
+from modgen.design.capacitors import Arrangement
+from modgen.design.supply import price_at
 from modgen.formulas.glide import time_factor
 from modgen.spec.model import Spec
 
@@ -26,29 +28,6 @@ if TYPE_CHECKING:
 
 
 @dataclass(frozen=True)
-class Arrangement:
-    """A glide capacitor: one, or two polarised ones back to back (half the capacitance)."""
-
-    part: Capacitor
-    back_to_back: bool
-
-    @property
-    def capacitance(self) -> float:
-        """What the control sees [F]."""
-        return self.part.capacitance / 2 if self.back_to_back else self.part.capacitance
-
-    @property
-    def count(self) -> int:
-        """Parts per channel."""
-        return 2 if self.back_to_back else 1
-
-    @property
-    def leaky(self) -> bool:
-        """Whether its leakage is a current rather than an insulation resistance."""
-        return self.part.dielectric in practice.GLIDE_LEAKY
-
-
-@dataclass(frozen=True)
 class Room:
     """What an amplifier stage leaves to the network: its bias [A], budgets [-, V], least isolating resistor [ohm]."""
 
@@ -56,6 +35,23 @@ class Room:
     scale: float
     offset: float
     isolating: float
+
+
+@dataclass(frozen=True)
+class Reach:
+    """What can be had: whether the range is reached at all when budgets do not count; the longest glide beside the
+    asked shortest (0 when none), the shortest beside the asked longest (infinite when none) [s].
+    """
+
+    in_range: bool = False
+    longest: float = 0.0
+    shortest: float = math.inf
+
+    def wider(self, other: Reach) -> Reach:
+        """Both together."""
+        return Reach(
+            self.in_range or other.in_range, max(self.longest, other.longest), min(self.shortest, other.shortest)
+        )
 
 
 @dataclass(frozen=True)
@@ -75,32 +71,6 @@ class Network:
     biased: bool
     oversized: bool
     mismatch: float
-
-
-def arrangements(spec: Spec, catalogue: Catalogue) -> tuple[list[Arrangement], dict[str, str]]:
-    """Capacitors that may stand in the glide position, and why the others may not (dielectric -> reason)."""
-    asked = spec.build.capacitor
-    bipolar = spec.signal.low < 0
-    voltage = Ends.of(spec.rails).greatest
-    found: list[Arrangement] = []
-    refused: dict[str, str] = {}
-    for part in catalogue.of(Capacitor):
-        if part.mount != spec.build.mount:
-            continue
-        if asked != "auto" and asked not in (part.family, part.dielectric):
-            continue
-        if part.dielectric not in practice.GLIDE_DIELECTRICS + practice.GLIDE_LEAKY:
-            refused[part.dielectric] = "is piezoelectric, and its capacitance changes with the voltage on it"
-        elif part.dielectric in practice.GLIDE_LEAKY and spec.signal.pitch:
-            refused[part.dielectric] = "leaks tens to hundreds of cents through the control"
-        elif part.voltage * part.derating < voltage:
-            refused.setdefault(
-                part.dielectric,
-                f"at {part.derating:.0%} of its rating does not stand the {voltage:.4g} V of the rail",
-            )
-        else:
-            found.append(Arrangement(part, part.polarised and bipolar))
-    return found, refused
 
 
 def controls(spec: Spec, catalogue: Catalogue) -> tuple[list[Control], str]:
@@ -158,7 +128,7 @@ class Grid:
             return np.array(values, dtype=float).reshape(shape)
 
         c = factor * axis([a.capacitance for a in self.caps], 0)
-        c_tol = axis([a.part.tolerance for a in self.caps], 0)
+        c_tol = axis([a.tolerance for a in self.caps], 0)
         track = axis([p.resistance for p in self.pots], 1)
         track_tol = axis([p.tolerance for p in self.pots], 1)
         r, r_tol = (
@@ -176,8 +146,8 @@ class Grid:
             self.shortest, self.longest = c * (r + end), c * (r + track)
 
         signal = max(abs(spec.signal.low), abs(spec.signal.high))
-        self._insulation = axis([float("inf") if a.leaky else a.part.insulation(signal) for a in self.caps], 0)
-        self._leakage = axis([a.part.leakage(signal) if a.leaky else 0.0 for a in self.caps], 0)
+        self._insulation = axis([a.insulation(signal) for a in self.caps], 0)
+        self._leakage = axis([a.leakage(signal) for a in self.caps], 0)
         # a hair of room, so that a range met exactly is not lost to rounding
         inside = (self.shortest <= spec.glide.shortest * (1 + 1e-9)) & (self.longest >= spec.glide.longest * (1 - 1e-9))
         self.index = np.argwhere(inside)
@@ -189,12 +159,12 @@ class Grid:
             return sums
 
         self.cost = total(
-            [a.count * price_at(a.part, a.count * channels * boards) for a in self.caps],
+            [a.cost(channels * boards) for a in self.caps],
             [price_at(p, channels * boards) for p in self.pots],
             [price_at(x, channels * boards) for x in self.resistors],
         )
         self.area = total(
-            [a.count * a.part.body.area for a in self.caps],
+            [a.area for a in self.caps],
             [p.body.area for p in self.pots],
             [x.body.area for x in self.resistors],
         )
@@ -204,11 +174,12 @@ class Grid:
         self.isolating = self._isolating[0, 0, k]
         self.scale = through / (through + self._insulation[i, 0, 0])
         self.leak = through * self._leakage[i, 0, 0]
+        self.count = np.array([len(a.parts) for a in self.caps])[i]
         self.leaky = np.array([a.leaky for a in self.caps], dtype=bool)[i]
         self.oversized = self.longest[i, j, k] > practice.OVERSIZE * spec.glide.longest
         self.mismatch = self.longest[i, j, k] / spec.glide.longest * spec.glide.shortest / self.shortest[i, j, k]
         self._names = (
-            _ranks([a.part.key for a in self.caps])[i],
+            _ranks([a.key for a in self.caps])[i],
             _ranks([p.key for p in self.pots])[j],
             _ranks([x.key for x in self.resistors])[k],
         )
@@ -216,9 +187,9 @@ class Grid:
     def ranked(self, room: Room, most: int = 40) -> list[Network]:
         """The best combinations whose errors fit what is left of the budgets, best first.
 
-        Order: insulating dielectrics before leaking ones; little bias through the control before much; ranges
-        that are not oversized before those that are; then ``prefer``, then how closely the range fits, then the
-        parts' names.
+        Order: insulating dielectrics before leaking ones; little bias through the control before much; one part
+        before two; ranges that are not oversized before those that are; then ``prefer``, then how closely the
+        range fits, then the parts' names.
         """
         import numpy as np
 
@@ -270,18 +241,21 @@ class Grid:
             mismatch=float(self.mismatch[n]),
         )
 
-    def nearest(self, room: Room) -> tuple[float | None, float | None]:
-        """What can be had: the longest glide beside the asked shortest, the shortest beside the asked longest [s]."""
+    def reach(self, room: Room) -> Reach:
+        """What can be had within a room when the asked range cannot."""
         import numpy as np
 
         scale = self.resistance / (self.resistance + self._insulation)
         offset = self.resistance * (self._leakage + room.bias)
-        within = (scale <= room.scale) & (offset <= room.offset) & (self._isolating >= room.isolating * (1 - 1e-9))
+        driven = self._isolating >= room.isolating * (1 - 1e-9)
+        within = (scale <= room.scale) & (offset <= room.offset) & driven
         quick = within & (self.shortest <= self.spec.glide.shortest)
         slow = within & (self.longest >= self.spec.glide.longest)
-        longest = float(np.max(self.longest[quick])) if quick.any() else None
-        shortest = float(np.min(self.shortest[slow])) if slow.any() else None
-        return longest, shortest
+        return Reach(
+            in_range=bool((self.isolating >= room.isolating * (1 - 1e-9)).any()),
+            longest=float(np.max(self.longest[quick])) if quick.any() else 0.0,
+            shortest=float(np.min(self.shortest[slow])) if slow.any() else math.inf,
+        )
 
 
 def in_steps(cost: Numeric, error: Numeric, area: Numeric) -> tuple[Numeric, Numeric, Numeric]:
@@ -298,7 +272,7 @@ def _whole(value: Numeric) -> Numeric:
     return (value + 0.5 + 1e-6) // 1
 
 
-def _ranks(names: list[str]) -> NDArray[np.int64]:
+def _ranks(names: Sequence[str | tuple[str, ...]]) -> NDArray[np.int64]:
     import numpy as np
 
     ordered = {name: n for n, name in enumerate(sorted(set(names)))}

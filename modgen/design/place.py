@@ -88,7 +88,9 @@ def place(spec: Spec, values: Values, jack: Jack, header: Header, reasons: dict[
             for far in (glide, GROUND):
                 add("C", values.glide, "glide-capacitor", {"1": far, "2": net + "MID"}, channel)
         else:
-            add("C", values.glide, "glide-capacitor", {"1": glide, "2": GROUND}, channel)
+            for capacitor in (values.glide, values.glide_parallel):
+                if capacitor is not None:
+                    add("C", capacitor, "glide-capacitor", {"1": glide, "2": GROUND}, channel)
         drive = net + "DRIVE"
         outs = [net + "OUT" + (str(n) if n > 1 else "") for n in range(1, spec.outputs_of(channel) + 1)]
         for out in outs:

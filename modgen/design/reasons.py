@@ -79,11 +79,12 @@ def _network(spec: Spec, outcome: Outcome) -> list[Choice]:
     worst = "worst case" if glide.cover == "worst-case" else "nominal"
     lost: list[tuple[str, str]] = []
     for other in outcome.networks:
-        pair = f"{other.capacitor.part.key} with {other.control.key} and {other.isolating.key}"
+        pair = f"{' beside '.join(other.capacitor.key)} with {other.control.key} and {other.isolating.key}"
         if (other.capacitor, other.control) != (best.capacitor, best.control) and len(lost) < 2:
             lost.append((pair, _network_lost(spec, best, other)))
     lost += list(outcome.dielectrics)
-    arrangement = " (two, back to back)" if best.capacitor.back_to_back else ""
+    first, *beside = best.capacitor.key
+    arrangement = " (two, back to back)" if best.capacitor.back_to_back else "".join(f" beside {key}" for key in beside)
     reach = f"{text(best.shortest, 'time')} to {text(best.longest, 'time')} {worst} ({glide.measure})"
     asked = f"{text(glide.shortest, 'time')} to {text(glide.longest, 'time')}"
     low, high = 1 - best.shortest / glide.shortest, 1 - glide.longest / best.longest
@@ -95,7 +96,7 @@ def _network(spec: Spec, outcome: Outcome) -> list[Choice]:
     return [
         Choice(
             "glide-capacitor",
-            f"{best.capacitor.part.key}{arrangement}",
+            f"{first}{arrangement}",
             f"{_ORDER[spec.build.prefer]} of {outcome.combinations} combinations: reaches {reach} "
             f"where {asked} is asked",
             "the longest glide" if high <= low else "the shortest glide",

@@ -9,7 +9,7 @@ from dataclasses import replace
 
 from modgen.catalogue import Catalogue
 from modgen.catalogue.records import Amplifier, Capacitor
-from modgen.design.network import Grid, Room
+from modgen.design.network import Grid, Reach, Room
 from modgen.problems import InputError, Problem
 from modgen.spec.model import Spec
 from modgen.units import format_quantity
@@ -119,17 +119,16 @@ def _down(value: float) -> float:
     return math.trunc(value * 10) / 10
 
 
-def no_network(spec: Spec, grid: Grid, room: Room, refused: Sequence[tuple[str, str]]) -> InputError:
+def no_network(spec: Spec, reach: Reach, room: Room, refused: Sequence[tuple[str, str]]) -> InputError:
     """Some type would do, but no network reaches the range or keeps the budgets with it."""
-    longest, shortest = grid.nearest(room)
     glide = spec.glide
-    reach = []
-    if longest is not None and longest > glide.shortest:
-        reach.append(f"{_time(glide.shortest)} to {_time(longest)}")
-    if shortest is not None and shortest < glide.longest:
-        reach.append(f"{_time(shortest)} to {_time(glide.longest)}")
-    near = f"the nearest that can be had: {' or '.join(reach)}" if reach else ""
-    if (grid.isolating >= room.isolating).any():
+    ranges = []
+    if reach.longest > glide.shortest:
+        ranges.append(f"{_time(glide.shortest)} to {_time(reach.longest)}")
+    if reach.shortest < glide.longest:
+        ranges.append(f"{_time(reach.shortest)} to {_time(glide.longest)}")
+    near = f"the nearest that can be had: {' or '.join(ranges)}" if ranges else ""
+    if reach.in_range:
         stated = dict(spec.places)
         key = next((k for k in ("accuracy", "build.capacitor", "build.amplifier") if k in stated), "glide.longest")
         return refusal(
@@ -139,15 +138,15 @@ def no_network(spec: Spec, grid: Grid, room: Room, refused: Sequence[tuple[str, 
             _list("every type is refused", refused) + (f"\n         {near}" if near else ""),
             "allow more error, ask for a range that can be had, or another amplifier or capacitor",
         )
-    if longest is None and shortest is None:
+    if not reach.longest and reach.shortest == math.inf:
         needed = format_quantity(room.isolating, "resistance")
         blocks = (
             f"what the amplifier can drive asks for an isolating resistor of {needed} at least, and with that "
             "neither end can be reached"
         )
-    elif longest is None:
+    elif not reach.longest:
         blocks = "the shortest glide blocks: no capacitor is small enough for any control and resistor"
-    elif shortest is None:
+    elif reach.shortest == math.inf:
         blocks = "the longest glide blocks: no capacitor is large enough for any control"
     else:
         blocks = (

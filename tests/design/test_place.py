@@ -67,6 +67,13 @@ def test_one_channel_along_the_signal(design_of: Callable) -> None:
     assert role(design, "amplifier")[0].channel == 1
 
 
+def test_two_capacitors_in_parallel_where_one_does_not_reach(design_of: Callable) -> None:
+    design = design_of("channels: 1", "jacks: 2", "glide: {shortest: 40 ms, longest: 30 s}")
+    one, two = role(design, "glide-capacitor")
+    assert nets(one) == nets(two) == {"1": "CH1_GLIDE", "2": "0V"}
+    assert one.record.capacitance + two.record.capacitance == pytest.approx(14.7e-6)
+
+
 def test_output_resistor_inside_the_loop(design_of: Callable) -> None:
     design = design_of("channels: 1", "jacks: 2", "output: {protection: inside}")
     assert nets(role(design, "output-series")[0]) == {"1": "CH1_DRIVE", "2": "CH1_OUT"}

@@ -32,7 +32,7 @@ def test_longest_glide_that_needs_a_capacitor_that_does_not_exist(refused: Calla
     assert problem.what == "a glide of 5 ms to 900 s (rise) cannot be had nominally from the catalogue"
     assert problem.why == (
         "the longest glide blocks: no capacitor is large enough for any control; "
-        "the nearest that can be had: 5 ms to 7.26 s"
+        "the nearest that can be had: 5 ms to 9.67 s"
     )
     assert problem.fix == (
         "change glide.shortest or glide.longest to a range that can be had, or add parts with build.catalogue"
@@ -162,7 +162,7 @@ def test_rails_that_can_be_had(catalogue: Catalogue, spec_of: Callable, lines: t
 
 
 def test_output_that_barely_sinks_next_to_its_rail(refused: Callable) -> None:
-    """Falling to 0 V on a single supply the LM358 sinks microamperes: no glide resistor is large enough for a fast end."""
+    """Falling to 0 V on a single supply the LM358 sinks microamperes: no glide resistor is large enough."""
     problem = refused(
         "rails: {positive: 12 V, negative: 0 V}", "signal: {span: 0 V to 5 V}", "build: {amplifier: LM358}"
     )

@@ -5,14 +5,18 @@ from __future__ import annotations
 import itertools
 import math
 import random
+import time
+import tracemalloc
+from collections import Counter
 from collections.abc import Callable, Iterator
 
 import pytest
 
 from modgen.catalogue import Amplifier, Capacitor, Catalogue, Control, Diode, Resistor
 from modgen.design import practice
+from modgen.design.capacitors import Arrangement, arrangements, pairs
 from modgen.design.choose import choose
-from modgen.design.network import Arrangement, Grid, Room, arrangements, controls, isolators
+from modgen.design.network import Grid, Room, controls, isolators
 from modgen.design.stage import Stage, stages_of
 from modgen.design.supply import price_at
 from modgen.formulas.glide import time_factor
@@ -21,7 +25,7 @@ from modgen.spec import Spec
 AMPLIFIERS = ("TL07x", "LF35x", "OPAx134", "LM358")
 
 
-def reduced(catalogue: Catalogue, seed: int, caps: int = 9, pots: int = 6, resistors: int = 30) -> Catalogue:
+def reduced(catalogue: Catalogue, seed: int, caps: int = 9, pots: int = 6, resistors: int = 24) -> Catalogue:
     """A random part of the catalogue, with all that the search does not look at left in."""
     chance = random.Random(seed)
     keep: list[str] = []
@@ -49,11 +53,16 @@ def steps(cost: float, error: float, area: float) -> tuple[int, int, int]:
     )
 
 
+def tolerance_of(cap: Arrangement) -> float:
+    """Every part off the same way, weighed by its share."""
+    return sum(p.tolerance * p.capacitance for p in cap.parts) / sum(p.capacitance for p in cap.parts)
+
+
 def feasible(spec: Spec, cap: Arrangement, pot: Control, r: Resistor) -> tuple[float, float] | None:
     """Guaranteed shortest and longest glide, or None outside the asked range: hand formulas, no arrays."""
     factor = time_factor(spec.glide.measure, spec.glide.step, spec.glide.within)
     if spec.glide.cover == "worst-case":
-        c_low, c_high = (cap.capacitance * (1 + s * cap.part.tolerance) for s in (-1, 1))
+        c_low, c_high = (cap.capacitance * (1 + s * tolerance_of(cap)) for s in (-1, 1))
         shortest = factor * c_high * (r.resistance * (1 + r.tolerance) + pot.end_high)
         longest = factor * c_low * (r.resistance * (1 - r.tolerance) + pot.resistance * (1 - pot.tolerance))
     else:
@@ -69,31 +78,35 @@ def networks(spec: Spec, catalogue: Catalogue, stage: Stage) -> Iterator[tuple[t
     span = spec.signal.high - spec.signal.low
     signal = max(abs(spec.signal.low), abs(spec.signal.high))
     bias = stage.amplifier.bias_max
+    singles = arrangements(spec, catalogue)[0]
     for cap, pot, r in itertools.product(
-        arrangements(spec, catalogue)[0], controls(spec, catalogue)[0], isolators(spec, catalogue)
+        [*singles, *pairs(singles)], controls(spec, catalogue)[0], isolators(spec, catalogue)
     ):
         times = feasible(spec, cap, pot, r)
         if times is None or span / (r.resistance * (1 - r.tolerance)) > stage.amplifier.short_circuit_least:
             continue
         through = r.resistance * (1 + r.tolerance) + pot.resistance * (1 + pot.tolerance)
-        scale = 0.0 if cap.leaky else through / (through + cap.part.insulation(signal))
-        offset = bias * through + (cap.part.leakage(signal) * through if cap.leaky else 0.0)
+        insulation = math.inf if cap.leaky else 1 / sum(1 / part.insulation(signal) for part in cap.parts)
+        scale = through / (through + insulation) if insulation < math.inf else 0.0
+        offset = bias * through + (cap.parts[0].leakage(signal) * through if cap.leaky else 0.0)
         if scale > spec.accuracy.scale - stage.scale or offset > spec.accuracy.offset - stage.offset:
             continue
         n = spec.channels * spec.order.boards
-        cost = cap.count * price_at(cap.part, cap.count * n) + price_at(pot, n) + price_at(r, n)
-        area = cap.count * cap.part.body.area + pot.body.area + r.body.area
+        bought = Counter(cap.parts)
+        cost = sum(k * price_at(part, k * n) for part, k in bought.items()) + price_at(pot, n) + price_at(r, n)
+        area = sum(part.body.area for part in cap.parts) + pot.body.area + r.body.area
         mismatch = times[1] / spec.glide.longest * spec.glide.shortest / times[0]
         oversized = times[1] > practice.OVERSIZE * spec.glide.longest
         yield (
             (
                 cap.leaky,
                 bias * through > 0.1 * spec.accuracy.offset,
+                len(cap.parts),
                 oversized,
                 steps(cost, scale + offset / span, area),
                 round(math.log(mismatch), 6),
             ),
-            (cap.part.key, pot.key, r.key),
+            (cap.key, pot.key, r.key),
         )
 
 
@@ -108,12 +121,13 @@ def brute_force(spec: Spec, catalogue: Catalogue) -> tuple[str, tuple[str, ...]]
     for name, forms in by_type.items():
         for stage in stages_of(spec, catalogue, forms)[0]:
             mine = steps(stage.cost, stage.scale + stage.offset / span, stage.area)
-            for (leaky, biased, oversized, theirs, mismatch), keys in networks(spec, catalogue, stage):
+            for (leaky, biased, count, oversized, theirs, mismatch), keys in networks(spec, catalogue, stage):
                 weights = (spec.channels, 1, spec.channels)
                 sums = tuple(a + n * b for a, b, n in zip(mine, theirs, weights, strict=True))
                 key = (
                     leaky,
                     biased,
+                    count,
                     oversized,
                     stage.output.hot,
                     sums[first],
@@ -130,7 +144,7 @@ def brute_force(spec: Spec, catalogue: Catalogue) -> tuple[str, tuple[str, ...]]
                 )
                 if best is None or key < best:
                     best = key
-    return None if best is None else (best[11], (*best[12], best[13], *best[14]))
+    return None if best is None else (best[12], (*best[13], best[14], *best[15]))
 
 
 CASES = {
@@ -141,6 +155,7 @@ CASES = {
         "glide: {shortest: 20 ms, longest: 1 s, cover: worst-case}",
     ),
     "pitch": ("signal: {pitch: true}",),
+    "beyond one capacitor": ("glide: {shortest: 200 ms, longest: 12 s}", "accuracy: {offset: 3 %}"),
     "settling, 25 boards": (
         "glide: {shortest: 20 ms, longest: 3 s, measure: settle, step: 5 V, within: 5 cents}",
         "order: {boards: 25}",
@@ -148,8 +163,11 @@ CASES = {
 }
 
 
+SEEDS = [0, 1, *(pytest.param(seed, marks=pytest.mark.slow) for seed in range(2, 10))]
+
+
 @pytest.mark.parametrize("case", CASES)
-@pytest.mark.parametrize("seed", range(4))
+@pytest.mark.parametrize("seed", SEEDS)
 def test_equals_brute_force(catalogue: Catalogue, spec_of: Callable, case: str, seed: int) -> None:
     spec, small = spec_of(*CASES[case]), reduced(catalogue, seed)
     expected = brute_force(spec, small)
@@ -159,7 +177,7 @@ def test_equals_brute_force(catalogue: Catalogue, spec_of: Callable, case: str, 
     parts = (
         *(p.key for p in best.stage.packages),
         best.stage.diode.key,
-        best.network.capacitor.part.key,
+        best.network.capacitor.key,
         best.network.control.key,
         best.network.isolating.key,
     )
@@ -171,9 +189,9 @@ def test_most_samples_hold_a_solution(catalogue: Catalogue, spec_of: Callable) -
     found = sum(
         brute_force(spec_of(*lines), reduced(catalogue, seed)) is not None
         for lines in CASES.values()
-        for seed in range(4)
+        for seed in range(2)
     )
-    assert found >= 14
+    assert found >= 8
 
 
 @pytest.mark.parametrize("prefer", ["cost", "accuracy", "size"])
@@ -190,7 +208,7 @@ def test_nearest_range_is_the_true_extreme(catalogue: Catalogue, spec_of: Callab
     small = reduced(catalogue, 1)
     caps, pots, rs = arrangements(spec, small)[0], controls(spec, small)[0], isolators(spec, small)
     grid = Grid(spec, caps, pots, rs)
-    longest, shortest = grid.nearest(Room(0.0, 1.0, 1.0, 0.0))
+    reach = grid.reach(Room(0.0, 1.0, 1.0, 0.0))
     factor = math.log(9)
     times = [
         (factor * c.capacitance * (r.resistance + p.end), factor * c.capacitance * (r.resistance + p.resistance))
@@ -198,5 +216,21 @@ def test_nearest_range_is_the_true_extreme(catalogue: Catalogue, spec_of: Callab
     ]
     quick = [b for a, b in times if a <= 1e-3]
     slow = [a for a, b in times if b >= 100]
-    assert longest == (pytest.approx(max(quick)) if quick else None)
-    assert shortest == (pytest.approx(min(slow)) if slow else None)
+    assert reach.longest == (pytest.approx(max(quick)) if quick else 0.0)
+    assert reach.shortest == (pytest.approx(min(slow)) if slow else math.inf)
+
+
+def test_many_combinations_in_little_time_and_memory(catalogue: Catalogue, spec_of: Callable) -> None:
+    """Pairs of the full catalogue: tens of millions of combinations, looked at in portions."""
+    spec = spec_of("glide: {shortest: 40 ms, longest: 30 s}")
+    choose(spec, catalogue)  # imports and caches first
+    tracemalloc.start()
+    start = time.process_time()
+    outcome = choose(spec, catalogue)
+    spent = time.process_time() - start
+    peak = tracemalloc.get_traced_memory()[1]
+    tracemalloc.stop()
+    assert outcome.combinations > 10_000_000
+    assert len(outcome.best.network.capacitor.parts) == 2
+    assert peak < 200e6
+    assert spent < 5.0, "about 0.6 s on two idle cores; tracing costs a part of it"

@@ -11,8 +11,7 @@ import yaml
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from modgen import documents
-from modgen.documents import DEEPEST, Fields, Node, nearest, parse_yaml, read_yaml, shown, unknown
+from modgen.documents import DEEPEST, Fields, Node, nearest, parse_yaml, read_yaml, reader, shown, unknown
 from modgen.problems import InputError, Place, Problem
 
 QUOTING = (
@@ -89,7 +88,7 @@ def test_depth_up_to_the_bound_is_read() -> None:
 def test_the_pure_python_scanner_gives_the_same_nodes(monkeypatch: pytest.MonkeyPatch) -> None:
     data = "a: {b: [1, 'two', \"three µ\"]}\nc:\nd:\n  - x: |\n      y\n    z: >-\n      w\n".encode()
     fast = parse_yaml(data, "a.yaml")
-    monkeypatch.setattr(documents, "_LOADER", yaml.SafeLoader)
+    monkeypatch.setattr(reader, "_LOADER", yaml.SafeLoader)
     assert parse_yaml(data, "a.yaml") == fast
     assert message(b"a: 1\na: 2").startswith("a.yaml:2:1: error: the key 'a' stands twice in one mapping")
     assert message(b"[" * 5000).startswith("a.yaml:1:21: error: this spec is nested more than 20 levels deep")
@@ -155,13 +154,20 @@ REFUSED = {
     ),
     "unclosed list": (
         b"a: [1\n",
-        "a.yaml:2:1: error: this is not valid YAML: while parsing a flow sequence, did not find expected ',' or ']'\n"
-        "    why: what cannot be completed here begins at line 1, column 4\n"
-        f"    fix: {QUOTING}",
+        "a.yaml:1:4: error: the [ that opens here is not closed\n"
+        "    why: the page ends while it is open\n"
+        "    fix: close the [ that opens on line 1 with a ]",
     ),
     "two colons": (
         b"a: b: c\n",
-        "a.yaml:1:5: error: this is not valid YAML: mapping values are not allowed in this context\n"
+        "a.yaml:1:4: error: a second colon stands in the value of 'a': 'b: c'\n"
+        "    why: a colon and a blank end a key, and a line has one key\n"
+        "    fix: put the value in quotes, a: 'b: c', or in braces when it is made of keys, a: {b: c}",
+    ),
+    "what is left to the scanner's words": (
+        b"? a\n: b\n? c\n: [d\n",
+        "a.yaml:5:1: error: this is not valid YAML: while parsing a flow sequence, did not find expected ',' or ']'\n"
+        "    why: what cannot be completed here begins at line 4, column 3\n"
         f"    fix: {QUOTING}",
     ),
     "second document": (
@@ -253,6 +259,36 @@ def test_any_punctuation_gives_a_node_or_our_error(text: str) -> None:
         problems = error.problems
     lines = text.count("\n") + 1
     assert all(1 <= p.place.line <= lines + 1 and p.place.column >= 1 for p in problems)
+
+
+PIECES = ["a: 1", "b:", "c 2", "- ", "- d", "{", "}", "[", "]", ", ", "'", '"', "# e", "|", "? f", ": ", "\\", "&g "]
+
+
+@settings(deadline=None)
+@given(st.lists(st.sampled_from([*PIECES, "\n", "\n", "\n ", "\n  ", "\r\n", "\r"]), max_size=40).map("".join))
+def test_any_pieces_of_a_page_give_a_node_or_a_place_on_it(text: str) -> None:
+    problems: tuple[Problem, ...] = ()
+    try:
+        parse_yaml(text.encode(), "a.yaml")
+    except InputError as error:
+        problems = error.problems
+    ends = text.replace("\r\n", "\n").replace("\r", "\n").split("\n")
+    assert all(1 <= p.place.line <= len(ends) + 1 and p.place.column >= 1 for p in problems)
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        "- " * 9 + "[" + "'a', " * 20_000,
+        "a: '" + "x: y\n" * 20_000,
+        "a" + " " * 90_000 + "b\nc: {d",
+        "a 1\n" * 20_000 + "b: [",
+    ],
+)
+def test_the_search_for_the_trouble_ends_quickly(text: str) -> None:
+    begin = time.process_time()
+    assert "a.yaml:1:" in message(text.encode())
+    assert time.process_time() - begin < 1.0
 
 
 # files
@@ -366,6 +402,50 @@ def test_unknown_keys_are_reported_with_the_nearest() -> None:
         "    why: known here: longest, taper\n"
         "    fix: use one of the known names",
     ]
+
+
+def test_a_key_without_its_colon_is_told_so() -> None:
+    taken, problems = fields("{longest 2 s, taper:log, step}")
+    for key in ("longest", "taper", "step"):
+        taken.take(key)
+    taken.rest()
+    assert [str(p) for p in problems] == [
+        "a.yaml:1:2: error: there is no colon after 'longest'\n"
+        "    why: a key is followed by a colon and a blank\n"
+        "    fix: write 'longest: 2 s'",
+        "a.yaml:1:15: error: there is no blank after the colon of 'taper'\n"
+        "    why: a key is followed by a colon and a blank\n"
+        "    fix: write 'taper: log'",
+    ]
+
+
+def test_what_an_unknown_key_is_may_be_known_elsewhere() -> None:
+    taken, problems = fields("pitch: true\nzzz: 1\n")
+    taken.take("longest")
+    taken.rest(elsewhere=lambda name: name.problem("not here") if name.text == "pitch" else None)
+    assert [p.what for p in problems] == ["not here", "unknown key 'zzz' in glide"]
+
+
+def test_a_decimal_comma_in_braces_is_given_to_the_reader_of_the_value() -> None:
+    taken, problems = fields("{longest: 0,5 ms, prices: {1: 0,40, 100: 0,25}, span: ±2,5 V}")
+    longest, prices, span = (taken.take(key) for key in ("longest", "prices", "span"))
+    assert longest is not None
+    assert prices is not None
+    assert span is not None
+    assert (longest.text, longest.place) == ("0,5 ms", Place("a.yaml", 1, 11))
+    assert span.text == "±2,5 V"
+    assert [(k.text, v.text) for k, v in Fields(prices, problems).node.entries] == [("1", "0,40"), ("100", "0,25")]
+    taken.rest()
+    assert problems == []
+
+
+@pytest.mark.parametrize("text", ["{a: 1, 5 ms}", "{a: x,5}", "{a: 1,b}", "{a: 1,5: 2}", "{a: '1',5}", "{a: 1,\n 5}"])
+def test_other_keys_of_digits_stay_keys(text: str) -> None:
+    taken, problems = fields(text)
+    taken.take("a")
+    taken.rest()
+    assert len(problems) == 1
+    assert problems[0].what.startswith("unknown key '")
 
 
 def test_a_flood_of_unknown_keys_is_summed_up() -> None:

@@ -172,10 +172,20 @@ class Reader:
                 key.problem(
                     f"the family '{shown(key.text)}' has no kind",
                     f"the kind decides which figures it has: {', '.join(RECORDS)}",
-                    "add kind: resistor, for example",
+                    self._kind_to_add(key.text),
                 )
             )
         return kind, base
+
+    def _kind_to_add(self, name: str) -> str:
+        """How to give a family a kind; one with a known name is most likely meant to replace that one's parts."""
+        if name in self.known.families:
+            kind = self.known.families[name][0]
+            return (
+                f"add like: {shown(name)} to take over the figures of the family that is known by this name, "
+                f"or kind: {kind} to state all of its own"
+            )
+        return "add kind: resistor, for example, or like: and the name of a family whose figures it shares"
 
     def _build(self, rows: list[Row], family: Node) -> None:
         """The parts of the rows; what every row lacks is said once, of the family."""

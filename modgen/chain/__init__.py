@@ -6,7 +6,7 @@ what ``import modgen`` offers.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from contextlib import contextmanager
 from pathlib import Path
 
@@ -21,7 +21,7 @@ from modgen.outputs.model import Job
 from modgen.outputs.pack import write_pack
 from modgen.problems import InputError, Problem
 from modgen.rules import Report, judge
-from modgen.spec import Spec, read_spec
+from modgen.spec import Spec, missing_file, read_spec
 
 Progress = Callable[[str], None]
 
@@ -38,15 +38,15 @@ def catalogue_of(spec: Spec) -> Catalogue:
     InputError
         With every problem of these files.
     """
-    folder, problems = Path(spec.file).parent, list[Problem]()
+    problems = list[Problem]()
     catalogue: Catalogue | None = None
     prices: Mapping[str, tuple[PriceBreak, ...]] = {}
     with _collecting(problems):
-        catalogue = load_catalogue([folder / name for name in spec.build.catalogue])
-    if spec.order.prices:
+        catalogue = load_catalogue(_there(spec, "build.catalogue", spec.build.catalogue, problems))
+    for path in _there(spec, "order.prices", (spec.order.prices,), problems):
         with _collecting(problems):
             # without a catalogue there are no keys to know; all else of the file can still be judged
-            prices = read_prices(folder / spec.order.prices, catalogue.parts if catalogue else None)
+            prices = read_prices(path, catalogue.parts if catalogue else None)
     if catalogue is None or problems:
         raise InputError(problems)
     return catalogue.with_prices(prices, spec.order.prices) if prices else catalogue
@@ -131,22 +131,34 @@ def _files(spec: Spec) -> tuple[Catalogue, Mapping[str, str], Mapping[str, int]]
     InputError
         With the problems of all of them.
     """
-    folder, problems = Path(spec.file).parent, list[Problem]()
+    problems = list[Problem]()
     catalogue: Catalogue | None = None
     names: Mapping[str, str] = {}
     stock: Mapping[str, int] = {}
     with _collecting(problems):
         catalogue = catalogue_of(spec)
-    if spec.build.land_patterns:
+    for path in _there(spec, "build.land_patterns", (spec.build.land_patterns,), problems):
         known = {part.land_pattern for part in catalogue.parts.values()} if catalogue else None
         with _collecting(problems):
-            names = read_land_patterns(folder / spec.build.land_patterns, known)
-    if spec.order.stock:
+            names = read_land_patterns(path, known)
+    for path in _there(spec, "order.stock", (spec.order.stock,), problems):
         with _collecting(problems):
-            stock = read_stock(folder / spec.order.stock, catalogue.parts if catalogue else None)
+            stock = read_stock(path, catalogue.parts if catalogue else None)
     if catalogue is None or problems:
         raise InputError(problems)
     return catalogue, names, stock
+
+
+def _there(spec: Spec, key: str, names: Sequence[str], problems: list[Problem]) -> list[Path]:
+    """The named files that are there, relative to the spec; what is not is a problem where the spec names it."""
+    found = []
+    for name in filter(None, names):
+        problem = missing_file(spec, key, name)
+        if problem is None:
+            found.append(Path(spec.file).parent / name)
+        else:
+            problems.append(problem)
+    return found
 
 
 @contextmanager

@@ -1,5 +1,6 @@
 """The spec: one page of YAML, read into frozen values with every default resolved."""
 
+from modgen.spec.files import missing_file
 from modgen.spec.model import (
     Accuracy,
     Build,
@@ -30,6 +31,7 @@ __all__ = [
     "Spec",
     "Waiver",
     "json_schema",
+    "missing_file",
     "parse_spec",
     "read_spec",
     "resolved",

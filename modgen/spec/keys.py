@@ -28,6 +28,7 @@ class Key:
     - ``quantity``: text with a unit of ``dimension``, see :data:`modgen.units.UNITS`
     - ``level``: volts or cents; ``scale``: a share or cents per octave; ``offset``: volts or a share of span
     - ``span``: a range of voltages, two fields of the model
+    - ``range``: two quantities of ``dimension``, the lower first
     - ``section``: a mapping with the keys of ``section``; ``jacks``: that, or the total
     - ``waivers``: a list of mappings with the keys of ``section``
 

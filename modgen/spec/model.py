@@ -222,7 +222,7 @@ class Signal:
 
 @dataclass(frozen=True)
 class Accuracy:
-    """Budgets, worst case at 25 degC: scale as a fraction [-], offset [V]."""
+    """Budgets, worst case at 25 degC: scale as a fraction [-], offset [V]. Span of temperatures: ends [degC]."""
 
     scale: float = field(
         metadata=key(
@@ -247,6 +247,18 @@ class Accuracy:
             most=20.0,
             above=True,
         )
+    )
+    temperature: tuple[float, float] = field(
+        default=(15.0, 65.0),
+        metadata=key(
+            "range",
+            "coldest and warmest inside the case; what the offset drifts by between them is reported, not judged",
+            default="15 °C to 65 °C",
+            example="5 °C to 50 °C",
+            dimension="temperature",
+            least=-40.0,
+            most=125.0,
+        ),
     )
 
 
@@ -355,7 +367,7 @@ class Spec:
     """One module, whole: what the YAML page says and every default it leaves."""
 
     module: str = field(
-        metadata=key("title", "name of the module, 1 to 60 characters", required=True, example="Four-lane pitch lag")
+        metadata=key("title", "name of the module, 1 to 60 characters", required=True, example="My first lag")
     )
     channels: int = field(metadata=key("whole", "number of channels", required=True, example="4", least=1, most=64))
     jacks: Jacks = field(
@@ -415,12 +427,12 @@ class Spec:
             "waivers",
             "findings that somebody answers for, each with its reason",
             default="[]",
-            example="[{rule: odd-value, parts: [R3], reason: in the drawer}]",
+            example="[{rule: glide-range, parts: [C3], reason: measured on the prototype}]",
             section=Waiver,
         ),
     )
     file: str = field(default="spec.yaml", compare=False)
-    #: ("glide.longest", place) for every key that the page states
+    #: ("glide.longest", place) for every key that the page states, and ("build.catalogue[1]", place) for items
     places: tuple[tuple[str, Place], ...] = field(default=(), compare=False, repr=False)
 
     @property

@@ -9,6 +9,7 @@ from typing import Any
 from modgen.documents import Fields, Node, parse_yaml, read_yaml
 from modgen.problems import InputError, Place, Problem
 from modgen.spec import checks, values
+from modgen.spec.elsewhere import misplaced
 from modgen.spec.keys import Key, keys_of, page_name
 from modgen.spec.model import (
     Accuracy,
@@ -134,7 +135,7 @@ class _Reader:
             else:
                 read[name] = self._default(full, key, read)
             self._after(node, full, read)
-        fields.rest()
+        fields.rest(elsewhere=lambda name: misplaced(name, where))
         return read
 
     def _missing(self, node: Node, full: str, word: str, key: Key) -> None:
@@ -171,6 +172,9 @@ class _Reader:
                 return values.offset(node, full, key, self.span)
             if full.startswith("rails."):
                 return self._rail(node, full, key)
+            if key.kind == "paths":
+                items = node.items if node.kind == "sequence" else (node,)
+                self.places.extend((f"{full}[{number}]", item.place) for number, item in enumerate(items, 1))
             return values.read_value(node, full, key)
         except values.RefusedError as refused:
             self.problems.extend(refused.problems)

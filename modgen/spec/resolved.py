@@ -47,6 +47,8 @@ def _value(key: Key, value: Any, owner: Any) -> Any:
         return [_section(key.section, waiver) for waiver in value]
     if key.kind == "span":
         return span_text(owner.low, owner.high)
+    if key.kind == "range":
+        return " to ".join(exact_text(end, key.dimension) for end in value)
     if key.kind in ("paths", "parts"):
         return list(value)
     if key.kind == "path":

@@ -16,11 +16,13 @@ _WRITTEN: dict[str, tuple[str, str]] = {
     "time": ("[pnuµ\u03bcm]?s", ""),
     "ratio": ("%", ""),
     "pitch": ("cents?", ""),
+    "pitch per octave": (f"cents?(?:(?:{_BLANK}+per{_BLANK}+|{_BLANK}*/{_BLANK}*)octave)?", ""),
+    "temperature": ("(?:°C|degC)", ""),
     "resistance": ("(?:[mkKMGT]?(?:Ω|\u2126|[oO]hms?)|[kKMGT]|R)", "[RkKMGT]"),
 }
 _DIMENSIONS: dict[str, tuple[str, ...]] = {
     "level": ("voltage", "pitch"),
-    "scale": ("ratio", "pitch"),
+    "scale": ("ratio", "pitch per octave"),
     "offset": ("voltage", "ratio"),
 }
 
@@ -129,6 +131,9 @@ def _kind(key: Key) -> dict[str, Any]:
         volts = _one_of(("voltage",))
         ends = rf"(?:(?:±|\+/-){_BLANK}*{volts}|{volts}{_BLANK}+to{_BLANK}+{volts})"
         return {"type": "string", "pattern": f"^{_BLANK}*{ends}{_BLANK}*$"}
+    if key.kind == "range":
+        end = _one_of((key.dimension,))
+        return {"type": "string", "pattern": rf"^{_BLANK}*{end}{_BLANK}+to{_BLANK}+{end}{_BLANK}*$"}
     if key.kind in ("quantity", "level", "scale", "offset"):
         return {"type": "string", "pattern": quantity_pattern(_DIMENSIONS.get(key.kind, (key.dimension,)))}
     return name

@@ -14,7 +14,7 @@ from modgen.documents import Node, nearest, shown
 from modgen.problems import Problem
 from modgen.spec.keys import LONGEST_NAME, LONGEST_PATH, LONGEST_REASON, NONE, Key
 from modgen.spec.names import slug
-from modgen.units import QuantityError, parse_quantity, parse_span
+from modgen.units import QuantityError, parse_quantity, parse_range, parse_span
 
 #: most values of one list on the page
 LONGEST_LIST = 1000
@@ -25,6 +25,8 @@ NARROWEST_SPAN = 1e-3
 MOST_DIGITS = 18
 
 _WHOLE = re.compile(r"-?(0|[1-9][0-9]*)")
+# what a scale error in cents is an error of; it may be said and changes nothing
+_PER_OCTAVE = re.compile(r"(?<=[a-z])(?:[ \u00a0]+per[ \u00a0]+|[ \u00a0]*/[ \u00a0]*)octave[ \u00a0]*$")
 _RULE = re.compile(r"[a-z]+(-[a-z]+)*")
 
 
@@ -245,7 +247,9 @@ def scale(node: Node, name: str, key: Key) -> float:
     """A share, or cents per octave [-]."""
     text = scalar(node, name, key)
     # one cent per octave is 1/1200 of the octave, as one cent is 1/1200 V
-    return bounded(node, name, key, _parsed(node, name, text, "pitch" if _in_cents(text) else "ratio"))
+    if "cent" in text.casefold() and "percent" not in text.casefold():
+        return bounded(node, name, key, _parsed(node, name, _PER_OCTAVE.sub("", text), "pitch"))
+    return bounded(node, name, key, _parsed(node, name, text, "ratio"))
 
 
 def offset(node: Node, name: str, key: Key, span: float) -> float:
@@ -283,6 +287,23 @@ def span(node: Node, name: str, key: Key) -> tuple[float, float]:
             f"{name} is '{shown(text)}', narrower than 1 mV",
             "a control voltage moves more than that",
             "write ±5 V",
+        )
+    return low, high
+
+
+def quantity_range(node: Node, name: str, key: Key) -> tuple[float, float]:
+    """Two quantities, the lower first."""
+    text = scalar(node, name, key)
+    try:
+        low, high = parse_range(text, key.dimension)
+    except QuantityError as error:
+        raise refuse(node, f"{name}: {error.what}", error.why, error.fix) from None
+    if not (key.inside(low) and key.inside(high)):
+        raise refuse(
+            node,
+            f"{name} is '{shown(text)}', beyond its bounds",
+            f"{name} may lie {key.bounds}",
+            f"write a narrower range, for instance {key.default}",
         )
     return low, high
 
@@ -328,4 +349,5 @@ _READERS: dict[str, Callable[[Node, str, Key], Any]] = {
     "level": level,
     "scale": scale,
     "span": span,
+    "range": quantity_range,
 }

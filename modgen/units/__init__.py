@@ -10,6 +10,7 @@ from modgen.units.quantity import (
     read_value,
     value_text,
 )
+from modgen.units.ranges import parse_range
 
 __all__ = [
     "BANDS",
@@ -19,6 +20,7 @@ __all__ = [
     "colour_bands",
     "format_quantity",
     "parse_quantity",
+    "parse_range",
     "parse_span",
     "read_value",
     "rkm_code",

@@ -13,6 +13,8 @@ from dataclasses import dataclass
 from decimal import Decimal
 from types import MappingProxyType
 
+from modgen.units.remedies import in_words, reworded, with_unit, without_comma
+
 #: no quantity that means something is longer; keeps hostile text out of the number readers
 LONGEST_TEXT = 64
 #: value texts keep this many digits: more than any part has, fewer than binary fractions disturb
@@ -74,6 +76,7 @@ _KINDS: Mapping[str, _Kind] = MappingProxyType(
         "length": _Kind("a length", "m", ("m",), "µm", ("m",), "5 mm"),
         "power": _Kind("a power", "W", ("W",), "nµmk", ("n", "µ", "m", "", "k"), "250 mW"),
         "frequency": _Kind("a frequency", "Hz", ("Hz",), "mkMG", ("m", "", "k", "M", "G"), "3 MHz"),
+        "temperature": _Kind("a temperature", "°C", ("°C", "degC"), "", ("",), "25 °C", signed=True),
     }
 )
 
@@ -120,7 +123,7 @@ def parse_quantity(text: str, kind: str) -> float:
     -------
     float
         In base SI units [ohm, F, V, A, s, m, W, Hz]; a ratio as a fraction [-]; a pitch interval as the
-        voltage it is at 1 V per octave [V].
+        voltage it is at 1 V per octave [V]; a temperature as it is written [degC].
 
     Raises
     ------
@@ -345,7 +348,7 @@ def _clean(text: str, how: _Kind) -> str:
         raise QuantityError(
             f"{text!r} has a comma",
             "a comma is a decimal sign to some and a separator of thousands to others",
-            f"use a decimal point and no separators, for instance {how.example}",
+            without_comma(clean) or f"use a decimal point and no separators, for instance {how.example}",
         )
     return clean
 
@@ -381,7 +384,7 @@ def _unit(text: str, unit: str, kind: str, number: str) -> int:
         raise QuantityError(
             f"{text!r} has no unit",
             f"{how.article} needs one: what is not said is not guessed",
-            f"write {number} {how.unit}" + (f" or {number}R" if kind == "resistance" else ""),
+            f"write {number} Ω or {number}R" if kind == "resistance" else with_unit(number, how.unit),
         )
     for spelling in (*(s for s in how.spellings if s != "R"), ""):
         for prefix in ("", *_prefixes(how.prefixes)):
@@ -394,8 +397,9 @@ def _unit(text: str, unit: str, kind: str, number: str) -> int:
                     f"write {number}{' ' if spelling else ''}{right} if that is what is meant",
                 )
     for other, its in _KINDS.items():
-        if other != kind and any(
-            unit == prefix + spelling for spelling in its.spellings for prefix in ("", *_prefixes(its.prefixes))
+        if other != kind and (
+            any(unit == prefix + spelling for spelling in its.spellings for prefix in ("", *_prefixes(its.prefixes)))
+            or (in_words(unit, other, its.prefixes) and not in_words(unit, kind, how.prefixes))
         ):
             raise QuantityError(
                 f"{text!r} is {its.article}, not {how.article}",
@@ -406,7 +410,7 @@ def _unit(text: str, unit: str, kind: str, number: str) -> int:
         f"{text!r} has the unit {unit!r}, which is not one of {how.article}",
         f"{how.article} is measured in {how.unit}"
         + (f", with a prefix of {_listed(how.prefixes)} or none" if how.prefixes else ", with no prefix"),
-        f"write it like {how.example}",
+        reworded(number, unit, kind, how.prefixes, how.unit) or f"write it like {how.example}",
     )
 
 
@@ -432,10 +436,11 @@ def _code(text: str, clean: str, kind: str) -> tuple[str, int]:
                 f"the letters are {_listed(how.point + how.code)}, and capitals count",
                 f"write it like {how.example}",
             )
+    words = re.fullmatch(r"([+-]?[0-9]+(?:\.[0-9]+)?) *([^0-9]+)", clean)
     raise QuantityError(
         f"{_shown(text)} is not {how.article}",
         "it is not a decimal number followed by a unit" + (", nor a code of IEC 60062" if how.code else ""),
-        f"write it like {how.example}",
+        (reworded(words[1], words[2], kind, how.prefixes, how.unit) if words else "") or f"write it like {how.example}",
     )
 
 

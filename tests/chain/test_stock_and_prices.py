@@ -47,21 +47,19 @@ def job(folder: Path) -> Job:
 
 @pytest.fixture(scope="module")
 def lines(job: Job) -> dict[str, dict[str, object]]:
-    """The parts list's rows by order code, with formulas as they are written."""
+    """The parts list's rows by order code, or by value where a part has none, with formulas as they are written."""
     sheet = load_workbook(io.BytesIO(write_bom_xlsx(job)))["Parts list"]
     rows = (
         {heading: sheet.cell(row, n).value for n, heading in enumerate(HEADINGS, 1)}
         for row in range(TOP + 1, sheet.max_row)
     )
-    return {str(row["Order code"]): row for row in rows if row["Line"]}
+    return {str(row["Order code"] or row["Value"]): row for row in rows if row["Line"]}
 
 
 def test_stock_fills_the_workbooks_cells(lines: dict) -> None:
-    assert lines["jack-35-switched"]["In stock"] == 37
+    assert lines["3.5 mm socket"]["In stock"] == 37
     assert lines["TL072CP"]["In stock"] == 7
-    assert {
-        row["In stock"] for code, row in lines.items() if code not in ("jack-35-switched", "TL072CP", "1N5819")
-    } == {0}
+    assert {row["In stock"] for code, row in lines.items() if code not in ("3.5 mm socket", "TL072CP", "1N5819")} == {0}
     # the order is what is needed without it
     row = int(lines["TL072CP"]["Line"]) + TOP
     assert lines["TL072CP"]["To order"] == f"=MAX(0,K{row}+L{row}-M{row})"
@@ -77,7 +75,7 @@ def test_the_parts_list_orders_what_is_not_on_hand(job: Job) -> None:
 
 def test_prices_reach_the_workbook_and_are_not_called_invented(job: Job, lines: dict) -> None:
     assert lines["TL072CP"]["Prices"] is None
-    assert lines["jack-35-switched"]["Prices"] == "invented"
+    assert lines["3.5 mm socket"]["Prices"] == "invented"
     facts = load_workbook(io.BytesIO(write_bom_xlsx(job)))["Catalogue facts"]
     rows = [[cell.value for cell in row] for row in facts.iter_rows()]
     amplifier = next(row for row in rows if row[0] == "tl072-dip8")
@@ -132,7 +130,7 @@ def test_problems_of_all_files_at_once(modgen: Callable, write_spec: Callable[..
     assert (ran.status, ran.out) == (2, "")
     errors = [line.partition(": error: ")[0] for line in ran.err.splitlines() if ": error: " in line]
     # keys are not judged while the catalogue itself cannot be read
-    assert errors == ["mine.yaml:1:11", "names.yaml", "stock.csv:2:12"]
+    assert errors == ["mine.yaml:1:11", "spec.yaml:6:33", "stock.csv:2:12"]
     (tmp_path / "mine.yaml").unlink()
     write_spec("build: {land_patterns: names.yaml}", "order: {stock: stock.csv, prices: prices.csv}")
     ran = modgen("check", "spec.yaml")
@@ -140,7 +138,7 @@ def test_problems_of_all_files_at_once(modgen: Callable, write_spec: Callable[..
     assert "prices.csv:2:1: error: unknown part 'tl072-dip88'" in ran.err
     assert "fix: did you mean 'tl072-dip8'?" in ran.err
     assert "stock.csv:2:12: error: the quantity is 'some'" in ran.err
-    assert "names.yaml: error: " in ran.err
+    assert "spec.yaml:6:9: error: the land-pattern file 'names.yaml' cannot be found" in ran.err
     assert not (tmp_path / "output").exists()
 
 
@@ -151,5 +149,5 @@ def test_a_netlist_is_judged_without_the_stock_file(folder: Path, job: Job, tmp_
     )
     spec, report = check_netlist(folder / "without.yaml", netlist)
     assert (spec.order.stock, report.cleared) == ("absent.csv", True)
-    with pytest.raises(InputError, match=r"absent.csv: error: this stock file cannot be found"):
+    with pytest.raises(InputError, match=r"without.yaml:7:\d+: error: the stock file 'absent.csv' cannot be found"):
         run(folder / "without.yaml")

@@ -71,7 +71,7 @@ def test_missing_file_folder_and_catalogue(modgen: Callable, tmp_path: Path, wri
     write_spec("build: {catalogue: [mine.yaml]}")
     ran = modgen("build", "spec.yaml")
     assert ran.status == 2
-    assert "mine.yaml: error: " in ran.err
+    assert ran.err.startswith("spec.yaml:6:21: error: the catalogue file 'mine.yaml' cannot be found\n")
 
 
 @pytest.mark.skipif(os.name == "nt" or os.geteuid() == 0, reason="root reads and writes everything")

@@ -13,12 +13,21 @@ from modgen.problems import InputError
 from modgen.spec import parse_spec
 from modgen.units import QuantityError, parse_quantity
 
-CASES: dict[str, Any] = yaml.safe_load((Path(__file__).parent / "cases" / "messages.yaml").read_text(encoding="utf-8"))
+FOLDER = Path(__file__).parent / "cases"
+CASES: dict[str, Any] = yaml.safe_load((FOLDER / "messages.yaml").read_text(encoding="utf-8"))
+SYNTAX: dict[str, Any] = yaml.safe_load((FOLDER / "syntax.yaml").read_text(encoding="utf-8"))
 
 
 @pytest.mark.parametrize("case", CASES)
 def test_the_whole_message(refusal: Callable[..., str], case: str) -> None:
     assert refusal(**CASES[case]["page"]) + "\n" == CASES[case]["message"]
+
+
+@pytest.mark.parametrize("case", SYNTAX)
+def test_the_whole_message_about_a_page_that_is_no_yaml(case: str) -> None:
+    with pytest.raises(InputError) as caught:
+        parse_spec(SYNTAX[case]["text"])
+    assert str(caught.value) + "\n" == SYNTAX[case]["message"]
 
 
 def test_digits_without_end(refusal: Callable[..., str]) -> None:

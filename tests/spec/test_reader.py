@@ -64,7 +64,7 @@ build:
   land_patterns: names.yaml
 order: {boards: 25, spares: 2.5 %, stock: stock.csv, prices: prices.csv}
 waive:
-  - rule: odd-value
+  - rule: stale-waiver
     parts: [R3, R4]
     reason: >
       there is a bag of them
@@ -87,7 +87,7 @@ waive:
         build=Build("surface", "TL07x", "film-pp", "accuracy", ("mine.yaml", "sub dir/more.yaml"), "names.yaml"),
         order=Order(25, 0.025, "stock.csv", "prices.csv"),
         waive=(
-            Waiver("odd-value", ("R3", "R4"), "there is a bag of them in the drawer", Place("x")),
+            Waiver("stale-waiver", ("R3", "R4"), "there is a bag of them in the drawer", Place("x")),
             Waiver("glide-range", ("C1",), "measured", Place("x")),
             Waiver("no-land-pattern", (), "by hand", Place("x")),
         ),
@@ -101,6 +101,8 @@ def test_accuracy_follows_pitch_and_span(page: Page) -> None:
     assert parse_spec(page(signal="{span: 0 V to 5 V}")).accuracy == Accuracy(0.02, 0.02 * 5.0)
     assert parse_spec(page(signal="{pitch: true}", accuracy="{offset: 1 %}")).accuracy == Accuracy(5 / 1200, 0.1)
     assert parse_spec(page(accuracy="{scale: 12 cents}")).accuracy == Accuracy(0.01, 0.2)
+    for text in ("5 cents per octave", "5 cents/octave", "5 cents / octave", "'5 cents  per  octave '"):
+        assert parse_spec(page(accuracy=f"{{scale: {text}}}")).accuracy.scale == 5 / 1200
     # the order of the keys on the page does not count
     assert parse_spec("accuracy: {offset: 1 %}\nsignal: {span: ±2 V}\n" + page()).accuracy == Accuracy(0.02, 0.04)
 
@@ -165,6 +167,8 @@ def test_the_bounds_themselves_are_read(page: Page) -> None:
     assert parse_spec(page(module="x" * 60)).module == "x" * 60
     assert parse_spec(page(signal="{span: 0 V to 1 mV}")).signal.high == 0.001
     assert parse_spec(page(signal="{span: ±20 V}")).signal.low == -20.0
+    assert parse_spec(page(signal="{load: 10 kΩ}")).signal.load == 10e3
+    assert parse_spec(page(signal="{load: 1 TΩ}")).signal.load == 1e12
     assert parse_spec(page(glide="{shortest: 100 us, longest: 1000 s}")).glide.longest == 1000.0
     assert parse_spec(page(order="{boards: 1000000, spares: 100 %}")).order.boards == 1_000_000
 
@@ -196,6 +200,13 @@ def test_places(page: Page) -> None:
     assert spec.place("signal.span") == Place("specs/a.yaml", 6, 1)
     assert spec.place("build.mount") == Place("specs/a.yaml", 1, 1)
     assert spec.file == "specs/a.yaml"
+
+
+def test_places_of_the_items_of_a_list(page: Page) -> None:
+    spec = parse_spec(page(build="{catalogue: [a.yaml, b.yaml]}"))
+    assert spec.place("build.catalogue") == Place("spec.yaml", 6, 9)
+    assert spec.place("build.catalogue[2]") == Place("spec.yaml", 6, 29)
+    assert parse_spec(page(build="{catalogue: a.yaml}")).place("build.catalogue[1]") == Place("spec.yaml", 6, 20)
 
 
 def test_a_file_keeps_its_name(page: Page, tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:

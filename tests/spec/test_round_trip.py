@@ -91,14 +91,17 @@ def pages(draw: st.DrawFn) -> dict[str, Any]:
         },
         "signal": {
             "span": span,
-            **draw(some(source=numbers(0.0, 1e7, "Ω"), load=numbers(1e-3, 1e12, "Ω"), pitch=st.booleans())),
+            **draw(some(source=numbers(0.0, 1e7, "Ω"), load=numbers(1e4, 1e12, "Ω"), pitch=st.booleans())),
         },
     }
     optional = {
         "normalling": st.sampled_from(["ground", "chain"]),
         "accuracy": some(
-            scale=st.one_of(numbers(1e-4, 50.0, "%"), numbers(0.1, 600.0, "cents")),
+            scale=st.one_of(
+                numbers(1e-4, 50.0, "%"), numbers(0.1, 600.0, "cents"), numbers(0.1, 600.0, "cents per octave")
+            ),
             offset=st.one_of(numbers(1e-6, 20.0, "V"), numbers(1e-4, 50.0, "%")),
+            temperature=st.tuples(numbers(-40.0, 24.0, "°C"), numbers(25.0, 125.0, "°C")).map(" to ".join),
         ),
         "output": some(protection=st.sampled_from(["auto", "outside"])),
         "build": some(
@@ -112,7 +115,7 @@ def pages(draw: st.DrawFn) -> dict[str, Any]:
         "order": some(boards=st.integers(1, 1_000_000), spares=numbers(0.0, 100.0, "%"), stock=WORDS, prices=WORDS),
         "waive": st.lists(
             st.fixed_dictionaries(
-                {"rule": st.sampled_from(["glide-range", "odd-value"]), "reason": WORDS},
+                {"rule": st.sampled_from(["glide-range", "lone-net"]), "reason": WORDS},
                 optional={"parts": st.one_of(REFERENCES, st.lists(REFERENCES, min_size=1, max_size=3, unique=True))},
             ),
             max_size=3,
@@ -152,7 +155,7 @@ def test_resolved_states_every_default_in_the_words_of_the_page(page: Callable[.
         "glide": {"shortest": "5 ms", "longest": "2 s", "measure": "rise", "cover": "nominal", "taper": "log"},
         "normalling": "ground",
         "signal": {"span": "±5 V", "source": "1 kΩ", "load": "100 kΩ", "pitch": False},
-        "accuracy": {"scale": "2 %", "offset": "200 mV"},
+        "accuracy": {"scale": "2 %", "offset": "200 mV", "temperature": "15 °C to 65 °C"},
         "output": {"protection": "auto"},
         "build": {
             "mount": "through-hole",
@@ -178,7 +181,7 @@ def test_resolved_settling_pitch_and_waivers(page: Callable[..., str]) -> None:
         )
     )
     assert (written["glide"]["step"], written["glide"]["within"]) == ("1 V", "5 cents")
-    assert written["accuracy"] == {"scale": "5 cents", "offset": "30 mV"}
+    assert written["accuracy"] == {"scale": "5 cents", "offset": "30 mV", "temperature": "15 °C to 65 °C"}
     assert written["signal"]["span"] == "0 V to 5 V"
     assert written["waive"] == [{"rule": "a", "reason": "b"}, {"rule": "a", "parts": ["C3"], "reason": "b"}]
 

@@ -3,14 +3,17 @@
 from __future__ import annotations
 
 import re
+from pathlib import Path
 
 import pytest
 
-from modgen.spec import parse_spec, starter_text
+from modgen.rules import rule_names
+from modgen.spec import Waiver, parse_spec, read_spec, starter_text
 from modgen.spec.keys import keys_of, page_name
 from modgen.spec.model import Spec
 
 COMMENTED = [line for line in starter_text().splitlines() if re.match(r"#( *)[a-z_]+:", line)]
+SPECS = Path(__file__).resolve().parent.parent.parent / "specs"
 SETTLING = ("#  step:", "#  within:")
 
 
@@ -23,10 +26,25 @@ def without_comments(text: str) -> str:
 
 def test_it_reads_without_problems_and_is_narrow() -> None:
     text = starter_text()
-    assert parse_spec(text).slug == "four-lane-pitch-lag"
+    assert parse_spec(text).slug == "my-first-lag"
     assert max(len(line) for line in text.splitlines()) <= 110
     assert "\t" not in text
     assert text.endswith("\n")
+
+
+def test_it_writes_over_no_shipped_example() -> None:
+    shipped = {read_spec(path).slug for path in SPECS.glob("*.yaml")}
+    assert len(shipped) >= 4
+    assert parse_spec(starter_text()).slug not in shipped
+
+
+def test_the_rules_of_its_examples_exist() -> None:
+    keys = dict(keys_of(Spec))
+    waivers = parse_spec(starter_text() + f"waive: {keys['waive'].example}\n").waive
+    named = [waiver.rule for waiver in waivers] + [dict(keys_of(Waiver))["rule"].example]
+    assert len(named) == 2
+    assert set(named) <= set(rule_names())
+    assert all(f"rule: {waiver.rule}" in starter_text() for waiver in waivers)
 
 
 def test_its_comments_state_the_defaults() -> None:
@@ -35,7 +53,7 @@ def test_its_comments_state_the_defaults() -> None:
     every = sum(
         1 + len(keys_of(key.section) if key.kind == "section" and key.section else ()) for _, key in keys_of(Spec)
     )
-    assert len(stated.places) == every - len(SETTLING) == 37
+    assert len(stated.places) == every - len(SETTLING) == 38
 
 
 def test_settling_can_be_taken_out_of_its_comments() -> None:

@@ -75,6 +75,8 @@ from modgen.units import (
         ("0.25 W", "power", 0.25),
         ("125 mW", "power", 0.125),
         ("3 MHz", "frequency", 3e6),
+        ("65 °C", "temperature", 65.0),
+        ("-10degC", "temperature", -10.0),
     ],
 )
 def test_what_is_read(text, kind, value):
@@ -103,12 +105,22 @@ COMMA = "a comma is a decimal sign to some and a separator of thousands to other
             "resistance",
             "'4,7 kΩ' has a comma",
             COMMA,
-            "use a decimal point and no separators, for instance 4.7 kΩ, 4k7 or 100R",
+            "write 4.7 kΩ",
         ),
         (
             "10,000 V",
             "voltage",
             "'10,000 V' has a comma",
+            COMMA,
+            "write 10.000 V or 10000 V, whichever is meant",
+        ),
+        ("0,5 ms", "time", "'0,5 ms' has a comma", COMMA, "write 0.5 ms"),
+        (",25 s", "time", "',25 s' has a comma", COMMA, "write .25 s"),
+        ("4,7k", "resistance", "'4,7k' has a comma", COMMA, "write 4.7k"),
+        (
+            "1,000,000 V",
+            "voltage",
+            "'1,000,000 V' has a comma",
             COMMA,
             "use a decimal point and no separators, for instance 12 V",
         ),
@@ -161,6 +173,28 @@ COMMA = "a comma is a decimal sign to some and a separator of thousands to other
             "time",
             "'5 min' has the unit 'min', which is not one of a time",
             "a time is measured in s, with a prefix of p, n, µ, m or none",
+            "write 300 s",
+        ),
+        (
+            "5 fortnights",
+            "time",
+            "'5 fortnights' has the unit 'fortnights', which is not one of a time",
+            "a time is measured in s, with a prefix of p, n, µ, m or none",
+            "write it like 5 ms",
+        ),
+        ("5 volts", "time", "'5 volts' is a voltage, not a time", "a time is measured in s", "write it like 5 ms"),
+        (
+            "20 Msec",
+            "time",
+            "'20 Msec' has the unit 'Msec', which is not one of a time",
+            "a time is measured in s, with a prefix of p, n, µ, m or none",
+            "write it like 5 ms",
+        ),
+        (
+            "1e3 sec",
+            "time",
+            "'1e3 sec' has the unit 'sec', which is not one of a time",
+            "a time is measured in s, with a prefix of p, n, µ, m or none",
             "write it like 5 ms",
         ),
         (
@@ -168,7 +202,30 @@ COMMA = "a comma is a decimal sign to some and a separator of thousands to other
             "ratio",
             "'5 ppm' has the unit 'ppm', which is not one of a ratio",
             "a ratio is measured in %, with no prefix",
-            "write it like 5 %",
+            "write 0.0005 %",
+        ),
+        (
+            "0.02",
+            "ratio",
+            "'0.02' has no unit",
+            f"a ratio needs one: {NO_UNIT}",
+            "write 2 % or 0.02 %, whichever is meant",
+        ),
+        (
+            "-.5",
+            "ratio",
+            "'-.5' has no unit",
+            f"a ratio needs one: {NO_UNIT}",
+            "write -50 % or -.5 %, whichever is meant",
+        ),
+        ("0", "ratio", "'0' has no unit", f"a ratio needs one: {NO_UNIT}", "write 0 %"),
+        ("1", "ratio", "'1' has no unit", f"a ratio needs one: {NO_UNIT}", "write 1 %"),
+        (
+            "5 per cent",
+            "ratio",
+            "'5 per cent' is not a ratio",
+            NUMBER,
+            "write 5 %",
         ),
         (
             "4r7",
@@ -219,6 +276,37 @@ def test_what_is_refused(text, kind, what, why, fix):
         parse_quantity(text, kind)
     assert (caught.value.what, caught.value.why, caught.value.fix) == (what, why, fix)
     assert str(caught.value) == f"{what}\n    why: {why}\n    fix: {fix}"
+
+
+@pytest.mark.parametrize(
+    ("text", "kind", "instead"),
+    [
+        ("2 sec", "time", "2 s"),
+        ("2 seconds", "time", "2 s"),
+        ("2.50 Sec", "time", "2.50 s"),
+        ("20 msec", "time", "20 ms"),
+        ("20 milliseconds", "time", "20 ms"),
+        ("20 usec", "time", "20 µs"),
+        ("5 micro seconds", "time", "5 µs"),
+        ("1.5 min", "time", "90 s"),
+        ("5 volts", "voltage", "5 V"),
+        ("-5 millivolts", "voltage", "-5 mV"),
+        ("12 V DC", "voltage", "12 V"),
+        ("10 kilohms", "resistance", "10 kΩ"),
+        ("10 k ohm", "resistance", "10 kΩ"),
+        ("1 megohm", "resistance", "1 MΩ"),
+        ("1 meg", "resistance", "1 MΩ"),
+        ("2 nanofarads", "capacitance", "2 nF"),
+        ("5 percent", "ratio", "5 %"),
+        ("1 semitone", "pitch", "100 cents"),
+        ("20 milliamps", "current", "20 mA"),
+    ],
+)
+def test_a_unit_in_words_is_answered_with_the_same_number(text, kind, instead):
+    with pytest.raises(QuantityError) as caught:
+        parse_quantity(text, kind)
+    assert caught.value.fix == f"write {instead}"
+    assert parse_quantity(instead, kind) != 0.0
 
 
 def test_unknown_kind_is_a_fault_of_the_caller():
@@ -336,6 +424,7 @@ def test_any_span_is_in_order_or_refused(text):
         (0.1, "length", "100 mm"),
         (0.25, "power", "250 mW"),
         (3e6, "frequency", "3 MHz"),
+        (-40.0, "temperature", "-40 °C"),
         (math.inf, "resistance", "∞ Ω"),
         (-math.inf, "voltage", "-∞ V"),
     ],
@@ -367,6 +456,7 @@ SIZES = {
     "length": (1e-6, 1e1),
     "power": (1e-9, 1e4),
     "frequency": (1e-2, 1e10),
+    "temperature": (1.0, 150.0),
 }
 
 
@@ -445,4 +535,5 @@ def test_units_are_named():
         "length": "m",
         "power": "W",
         "frequency": "Hz",
+        "temperature": "°C",
     }

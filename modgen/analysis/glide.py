@@ -7,27 +7,18 @@ capacitor shortens the time by less than it costs in scale and is counted there 
 
 from __future__ import annotations
 
-import math
-from collections.abc import Sequence
 from dataclasses import dataclass
-from functools import lru_cache
-from typing import TYPE_CHECKING
 
 from modgen.analysis.board import Board, Lane
-from modgen.analysis.model import ChannelGlide, Interval
+from modgen.analysis.model import ChannelGlide, Interval, Matching
+from modgen.analysis.montecarlo import BoardDraws, draw_boards
 from modgen.catalogue.records import Control
 from modgen.formulas.glide import taper_resistance, time_factor
 from modgen.formulas.tolerance import wilson_interval
 from modgen.spec.model import Glide
 
-if TYPE_CHECKING:
-    import numpy as np
-    from numpy.typing import NDArray
-
-#: boards drawn per distinct set of values; a share near 95 % is then known to 0.1 %
-BOARDS = 200_000
-#: fixed, so that the same netlist gives the same share on every run
-SEED = 20_240_229
+#: where channels of one board are compared: both ends and the middle of the travel [-]
+COMPARED = (0.0, 0.5, 1.0)
 
 Tolerant = tuple[float, float]  # value, tolerance as a fraction
 
@@ -101,10 +92,12 @@ class LaneValues:
         """
         if not self.adjustable:
             return self.series(sign) + self.track(sign)
+        return self.series(sign) + max(self.residual(sign), self.track_share(rotation) * self.track(sign))
+
+    def track_share(self, rotation: float) -> float:
+        """Share of the control's track that is in the way at a rotation, end resistance apart [-]."""
         share = float(taper_resistance(self.taper, self.middle, rotation))
-        if not self.rising:
-            share = 1 - share
-        return self.series(sign) + max(self.residual(sign), share * self.track(sign))
+        return share if self.rising else 1.0 - share
 
     def time_constant(self, rotation: float, sign: int = 0) -> float:
         """Time constant at a rotation; the corners take every part to the same side [s]."""
@@ -172,7 +165,7 @@ def channel_glides(board: Board, glide: Glide) -> tuple[ChannelGlide, ...]:
     Returns
     -------
     tuple of ChannelGlide
-        By channel. Lanes of equal values are drawn once.
+        By channel. Lanes of equal values are counted together.
 
     Raises
     ------
@@ -180,11 +173,11 @@ def channel_glides(board: Board, glide: Glide) -> tuple[ChannelGlide, ...]:
         When a value in a lane is not a number above zero.
     """
     factor = factor_of(glide)
+    draws = board_draws(board, glide)
     out = []
-    for lane in board.channels:
+    for lane, (inside, drawn) in zip(board.channels, draws.channels_inside if draws else (), strict=True):
         values = LaneValues.of(board, lane)
-        inside = covering(values, factor, glide.shortest, glide.longest)
-        low, high = wilson_interval(inside, BOARDS)
+        low, high = wilson_interval(inside, drawn)
         out.append(
             ChannelGlide(
                 channel=lane.channel,
@@ -195,108 +188,116 @@ def channel_glides(board: Board, glide: Glide) -> tuple[ChannelGlide, ...]:
                 middle=values.interval(0.5, factor),
                 longest=values.interval(1 - values.fastest, factor),
                 time_constant_longest=values.time_constant(1 - values.fastest),
-                inside=inside / BOARDS,
+                inside=inside / drawn,
                 inside_low=float(low),
                 inside_high=float(high),
-                boards=BOARDS,
+                boards=draws.boards if draws else 0,
             )
         )
     return tuple(out)
 
 
-def boards_inside(glides: Sequence[ChannelGlide]) -> tuple[float, float, float]:
+def boards_inside(board: Board, glide: Glide) -> tuple[float, float, float]:
     """Share of boards on which every channel covers the asked range.
 
     Parameters
     ----------
-    glides
-        The channels of one board. None makes a share of nothing.
+    board
+        The netlist seen as electronics. Without a lane it has a share of nothing.
+    glide
+        The range that is asked for, and how it is measured.
 
     Returns
     -------
     tuple of float
-        Share, and the bounds of its 95 % interval. [-]
+        Share of the boards that were drawn, and its 95 % Wilson interval. [-]
+
+    Raises
+    ------
+    InputError
+        When a value in a lane is not a number above zero.
 
     Notes
     -----
-    The product over the channels: their parts are drawn independently. Real parts of one lot are alike, so the
-    true share lies between this and the share of the worst channel. The bounds are the products of the
-    channels' Wilson bounds.
-
-    Examples
-    --------
-    Four channels of which 43.7 % each cover it: 3.6 % of boards.
-
-    >>> round(100 * 0.437**4, 1)
-    3.6
+    The parts of a board are drawn independently. Real parts of one lot are alike, so the true share lies between
+    this and the share of the worst channel.
     """
-    if not glides:
+    draws = board_draws(board, glide)
+    if draws is None:
         return 0.0, 0.0, 0.0
-    return (
-        math.prod(glide.inside for glide in glides),
-        math.prod(glide.inside_low for glide in glides),
-        math.prod(glide.inside_high for glide in glides),
-    )
+    low, high = wilson_interval(draws.inside, draws.boards)
+    return draws.inside / draws.boards, float(low), float(high)
 
 
-@lru_cache(maxsize=256)
-def covering(values: LaneValues, factor: float, shortest: float, longest: float, boards: int = BOARDS) -> int:
-    """Boards out of ``boards`` on which the control covers a whole range.
+def matchings(board: Board, glide: Glide) -> tuple[Matching, ...]:
+    """How far apart the channels of one board are with their controls at the same rotation.
 
     Parameters
     ----------
-    values
-        The lane.
-    factor
-        Time over time constant. [-]
-    shortest, longest
-        The range that is asked for. [s]
-    boards
-        How many are drawn. [-]
+    board
+        The netlist seen as electronics.
+    glide
+        How the time is measured; every measure gives the same ratios.
 
     Returns
     -------
-    int
-        Boards whose shortest time is at most ``shortest`` and whose longest is at least ``longest``.
+    tuple of Matching
+        At both ends and the middle of the travel, by rotation. None for a board of one channel, nor at a rotation
+        at which a channel may take no time at all.
+
+    Raises
+    ------
+    InputError
+        When a value in a lane is not a number above zero.
 
     Notes
     -----
-    Resistances and capacitances are drawn uniformly within tolerance, the resistance left at the end of
-    travel uniformly from nothing to its guaranteed greatest. Real lots are narrower and off centre: the
-    share is for comparing designs, the corners are for promising. Numbers come from the raw stream of
-    PCG64, which NumPy keeps the same over its versions; its distributions may change.
+    From the tolerances of resistors, capacitors and controls and from the resistance left at the end of travel.
+    How far a control's law is off from its neighbour's is not in the catalogue, since makers do not state it for
+    single controls; in the middle of the travel it comes on top.
     """
-    import numpy as np
-
-    generator = np.random.PCG64(SEED)
-
-    def uniform() -> NDArray[np.float64]:
-        return (generator.random_raw(boards) >> np.uint64(11)).astype(np.float64) * 2.0**-53
-
-    def spread(part: Tolerant) -> NDArray[np.float64] | float:
-        value, tolerance = part
-        return value * (1 + tolerance * (2 * uniform() - 1)) if tolerance else value
-
-    series = _total([spread(part) for part in values.isolating])
-    track = spread(values.control)
-    capacitance = _total([1 / _total([1 / spread(part) for part in branch]) for branch in values.branches])
-    least: NDArray[np.float64] | float
-    if values.adjustable:
-        least = uniform() * np.maximum(values.end[0], values.end[1] * track)
-        # a control without end resistance still cannot leave more than all of it
-        least = np.minimum(least, track)
-    else:
-        least = track
-    covers = (factor * capacitance * (series + least) <= shortest) & (
-        factor * capacitance * (series + track) >= longest
-    )
-    return int(np.count_nonzero(np.broadcast_to(covers, (boards,))))
+    draws = board_draws(board, glide)
+    if draws is None:
+        return ()
+    lanes = [LaneValues.of(board, lane) for lane in board.channels]
+    out = []
+    for spread in draws.spreads:
+        times = [lane.interval(spread.rotation, 1.0) for lane in lanes]
+        nominal = [time.nominal for time in times]
+        out.append(
+            Matching(
+                rotation=spread.rotation,
+                nominal=max(nominal) / min(nominal) - 1,
+                half=spread.half,
+                most=spread.most,
+                worst=max(a.high / b.low for i, a in enumerate(times) for j, b in enumerate(times) if i != j) - 1,
+                boards=draws.boards,
+            )
+        )
+    return tuple(out)
 
 
-def _total(
-    parts: Sequence[NDArray[np.float64] | float],
-) -> NDArray[np.float64] | float:
-    out: NDArray[np.float64] | float = 0.0
-    for part in parts:
-        out = out + part
-    return out
+def board_draws(board: Board, glide: Glide) -> BoardDraws | None:
+    """The boards that shares and matching are counted on; None when there is no lane.
+
+    Parameters
+    ----------
+    board
+        The netlist seen as electronics.
+    glide
+        The range that is asked for, and how it is measured.
+
+    Returns
+    -------
+    BoardDraws or None
+        Boards of equal values and range are drawn once.
+
+    Raises
+    ------
+    InputError
+        When a value in a lane is not a number above zero.
+    """
+    lanes = tuple(LaneValues.of(board, lane) for lane in board.channels)
+    if not lanes:
+        return None
+    return draw_boards(lanes, factor_of(glide), glide.shortest, glide.longest, COMPARED)

@@ -103,7 +103,13 @@ def assembly_html(job: Job) -> bytes:
     rails = job.analyses.rails
     made = steps(job)
     spec = job.spec
-    feed = chosen([f"{rail_net(r)} {quantity(bringup.current_limit(r.current_peak), 'current')}" for r in rails])
+    feed = chosen(
+        [
+            f"{rail_net(r)} {quantity(bringup.current_limit(r.current_peak), 'current')}"
+            for r in rails
+            if bringup.current_limit(r.current_peak) > bringup.current_limit(r.current_max)
+        ]
+    )
     values: dict[str, object] = {
         "title": f"{spec.module}: assembly notes",
         "module": spec.module,
@@ -129,6 +135,7 @@ def assembly_html(job: Job) -> bytes:
         "hold": benchtest.hold_time(job),
         "feed": feed,
         "scale": benchtest.scale_table(job),
+        "digits": benchtest.READING_DIGITS,
         "levels": benchtest.scale_levels(job),
         "signal": spec.signal,
         "chain": spec.normalling == "chain" and spec.jacks.inputs > 1,

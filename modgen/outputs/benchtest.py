@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
+import math
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from modgen.formulas.loading import loading_error
 from modgen.outputs.pages import BLANK, TICK, Table, columns
 from modgen.outputs.wording import NOTHING, percent, quantity, short_ranges, signed
 
@@ -17,6 +20,16 @@ SETTLED = 5.0
 CLEAR_OF_END = 0.1
 
 
+#: The least limit that is worth giving [V]: a hand-held meter is not sure of less. Common practice, no source.
+LEAST_LIMIT = 1e-3
+
+#: Terms of the scale budget that can go either way begin with this; every other one only takes something away.
+TWO_SIDED = "common-mode rejection"
+
+#: Significant digits of what a scale reading may be.
+READING_DIGITS = 4
+
+
 def output_bounds(job: Job) -> tuple[float, float]:
     """What an output may show with 0 V at its input [V].
 
@@ -28,9 +41,10 @@ def output_bounds(job: Job) -> tuple[float, float]:
     Returns
     -------
     tuple of float
-        Low and high; on a single supply not below 0 V, and up to where the amplifier's swing begins. [V]
+        Low and high; on a single supply not below 0 V, and up to where the amplifier's swing begins. Never less
+        than :data:`LEAST_LIMIT` from 0 V. [V]
     """
-    offset = job.analyses.accuracy.offset_worst
+    offset = max(job.analyses.accuracy.offset_worst, LEAST_LIMIT)
     if not job.spec.rails.single:
         return -offset, offset
     swings = [h.can_low for h in job.analyses.headroom if h.subject == "swing" and "output" in h.stage]
@@ -52,15 +66,19 @@ def offset_words(job: Job) -> str:
     """
     budget = job.analyses.accuracy
     low, high = output_bounds(job)
+    if high == LEAST_LIMIT:
+        why = "which is as near as most meters can tell"
+    elif low < 0:
+        why = "the worst case of this design"
+    else:
+        why = "the worst of its offset and of where its swing begins"
     limits = (
-        f"within ±{quantity(high, 'voltage')} of 0 V, the worst case of this design"
-        if low < 0
-        else f"between 0 V and {quantity(high, 'voltage')}: the worst of its offset and of where its swing begins"
+        f"within ±{quantity(high, 'voltage')} of 0 V" if low < 0 else f"between 0 V and {quantity(high, 'voltage')}"
     )
     return (
-        f"Every output stays {limits}; the offset is at most ±{quantity(budget.offset_worst, 'voltage')} at 25 °C "
-        f"(budget ±{quantity(budget.offset_budget, 'voltage')}; at {budget.hot:g} °C up to ±"
-        f"{quantity(budget.offset_hot, 'voltage')})."
+        f"Every output stays {limits}, {why}; the offset is at most ±{quantity(budget.offset_worst, 'voltage')} "
+        f"at 25 °C (budget ±{quantity(budget.offset_budget, 'voltage')}; at {budget.hot:g} °C up to "
+        f"±{quantity(budget.offset_hot, 'voltage')})."
     )
 
 
@@ -226,6 +244,59 @@ def scale_levels(job: Job) -> tuple[float, float]:
     return low, signal.high
 
 
+@dataclass(frozen=True)
+class ScaleReading:
+    """What the output of one channel makes of the change at the input [V]."""
+
+    expected: float
+    low: float
+    high: float
+
+
+def scale_reading(job: Job, channel: int) -> ScaleReading:
+    """What a good channel shows between the two levels of the scale test, with the source and load of the spec.
+
+    Parameters
+    ----------
+    job
+        The module. [-]
+    channel
+        Which one; nothing is plugged into any other input. [-]
+
+    Returns
+    -------
+    ScaleReading
+        Expected with the spec's own source and load and nominal parts; ``low`` with everything that takes
+        something away at its worst; ``high`` with a source of 0 ohm and a load that is there. No limit is nearer
+        than :data:`LEAST_LIMIT` to what is expected. [V]
+
+    Notes
+    -----
+    Source and load make dividers, so they, the open-loop gain and the insulation of the glide capacitor only ever
+    lower a reading; common-mode rejection alone has no sign. So a load that is missing shows, as soon as the
+    output resistor stands outside the loop: the reading is then over ``high``.
+    """
+    values, spec, budget = job.design.values, job.spec, job.analyses.accuracy
+    low_level, high_level = scale_levels(job)
+    span = high_level - low_level
+    either = math.fsum(t.worst for t in budget.terms if t.kind == "scale" and t.name.startswith(TWO_SIDED))
+    series, load = values.output_series, spec.signal.load
+    loaded = least_loaded = 0.0
+    if not values.inside_loop:
+        loaded = loading_error(series.resistance, load)
+        least_loaded = loading_error(series.resistance * (1 - series.tolerance), load)
+    # a source in a chain also drives the terminators of the empty sockets after it
+    fed = spec.input_of(channel)
+    terminators = spec.jacks.inputs - fed + 1 if spec.normalling == "chain" else 1
+    sourced = loading_error(spec.signal.source, values.terminator.resistance / terminators)
+    expected = span * (1 - sourced) * (1 - loaded)
+    return ScaleReading(
+        expected,
+        min(span * (1 - budget.scale_worst), expected - LEAST_LIMIT),
+        max(span * (1 - least_loaded + either), expected + LEAST_LIMIT),
+    )
+
+
 def scale_table(job: Job) -> Table:
     """Scale of every channel between the ends of the signal's span.
 
@@ -237,33 +308,59 @@ def scale_table(job: Job) -> Table:
     Returns
     -------
     Table
-        One row a channel; the limits are the worst case of the accuracy budget over the span.
+        One row a channel: what to expect, and the limits of :func:`scale_reading`, rounded outwards.
     """
     low, high = scale_levels(job)
-    span = high - low
-    worst = job.analyses.accuracy.scale_worst
-    rows = [
-        (
-            str(channel),
-            quantity(span, "voltage"),
-            f"{quantity(span * (1 - worst), 'voltage', 6)} to {quantity(span * (1 + worst), 'voltage', 6)}",
-            BLANK,
-            BLANK,
-            TICK,
-        )
-        for channel in range(1, job.spec.channels + 1)
-    ]
+    rows = []
+    for channel in range(1, job.spec.channels + 1):
+        reading = scale_reading(job, channel)
+        rows.append((str(channel), quantity(high - low, "voltage"), *reading_words(reading), BLANK, BLANK, TICK))
+    worst, budget = job.analyses.accuracy.scale_worst, job.analyses.accuracy.scale_budget
     return Table(
         "What the output makes of a change at the input",
-        columns("!Channel", "#Change at the input", "#Change at the output", "_At the low end", "_At the high end", ""),
+        columns(
+            "!Channel", "#Change in", "#Expect", "#Not below", "#Not above", "_At the low end", "_At the high end", ""
+        ),
         tuple(rows),
-        note=f"Predicted at most {scale_words(job, worst)}, "
-        f"budget {scale_words(job, job.analyses.accuracy.scale_budget)}.",
+        note=f"Expected with a source of {quantity(job.spec.signal.source, 'resistance')}, a load of "
+        f"{quantity(job.spec.signal.load, 'resistance')} and nominal parts. Scale error at most "
+        f"{scale_words(job, worst)}, budget {scale_words(job, budget)}. "
+        + (
+            "The load counts for nothing here: the output resistor stands inside the feedback loop."
+            if job.design.values.inside_loop
+            else "When a reading is over its limit, see first that the load is there."
+        ),
     )
 
 
+def reading_words(reading: ScaleReading) -> tuple[str, str, str]:
+    """Expected reading and limits as a meter shows them, all with the same decimals.
+
+    Parameters
+    ----------
+    reading
+        In volts. [V]
+
+    Returns
+    -------
+    tuple of str
+        Expected, low and high: the low one has four digits; the limits are rounded away from the expected one.
+
+    Examples
+    --------
+    >>> [text.replace("\u00a0", " ") for text in reading_words(ScaleReading(9.89, 9.8123, 9.99691))]
+    ['9.890 V', '9.812 V', '9.997 V']
+    """
+    decimals = max(0, READING_DIGITS - 1 - math.floor(math.log10(reading.low))) if reading.low > 0 else READING_DIGITS
+    step = 10.0**-decimals
+    low = math.floor(round(reading.low / step, 6)) * step
+    high = math.ceil(round(reading.high / step, 6)) * step
+    expected, low_text, high_text = (f"{value:.{decimals}f}\u00a0V" for value in (reading.expected, low, high))
+    return expected, low_text, high_text
+
+
 def scale_words(job: Job, share: float) -> str:
-    """A scale error as the spec's user thinks of it: cents per octave for pitch, else per cent.
+    """A scale error as the spec's user thinks of it: cents per octave for pitch, else per cent and cents beside.
 
     Parameters
     ----------
@@ -275,6 +372,7 @@ def scale_words(job: Job, share: float) -> str:
     Returns
     -------
     str
-        ``2.4 cents per octave`` or ``1.2 %``.
+        ``2.4 cents per octave`` or ``0.2 % (2.4 cents per octave)``.
     """
-    return f"{quantity(share, 'pitch')} per octave" if job.spec.signal.pitch else percent(share)
+    cents = f"{quantity(share, 'pitch')} per octave"
+    return cents if job.spec.signal.pitch else f"{percent(share)} ({cents})"

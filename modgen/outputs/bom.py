@@ -8,6 +8,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
+from itertools import count, takewhile
 from typing import Protocol
 
 from modgen.catalogue.records import (
@@ -22,10 +23,19 @@ from modgen.catalogue.records import (
 )
 from modgen.catalogue.records import Part as Record
 from modgen.netlist.model import Netlist, Part
+from modgen.outputs.partwords import order_words, package_words, value_words
 from modgen.units import QuantityError, format_quantity, read_value
 
 #: Shares of a whole part below this are rounding of the binary numbers, not parts to buy [-]
 WHOLE = 6
+
+#: The currency that prices are shown in; a catalogue's and a price file's prices carry none
+CURRENCY = "EUR"
+
+#: References in more pieces than this are shown as steps where people read them
+MOST_PIECES = 8
+#: Fewest references that make a range, and that make steps
+LEAST_RANGE, LEAST_STEPS = 3, 4
 
 _UNITS = {"resistor": "resistance", "control": "resistance", "capacitor": "capacitance"}
 
@@ -41,7 +51,8 @@ class Records(Protocol):
 class BomLine:
     """One orderable part, everything a line needs; texts are ready for people.
 
-    ``invented`` says that the prices are made up (catalogue evidence), not a seller's.
+    ``order_code`` is empty where any maker's part to the rating will do; ``alternates`` then says so. ``invented``
+    says that the prices are made up (catalogue evidence), not a seller's.
     """
 
     key: str
@@ -206,32 +217,97 @@ def short_ranges(refs: Iterable[str]) -> str:
             runs.append([part])
     texts = []
     for run in runs:
-        if len(run) > 2:
+        if len(run) >= LEAST_RANGE:
             texts.append(f"{run[0].ref}-{run[-1].ref}")
         else:
             texts.extend(p.ref for p in run)
     return ", ".join(texts)
 
 
+def brief_references(refs: Iterable[str]) -> str:
+    """References as :func:`short_ranges`, those at even steps together once the text gets long.
+
+    On a board of many equal channels the parts of one kind stand at even steps; one by one they would fill a cell
+    with lines that nobody reads.
+
+    Parameters
+    ----------
+    refs : iterable of str
+        As for :func:`short_ranges`.
+
+    Returns
+    -------
+    str
+        ``R5 to R383 (every 6th)``; the plain text while it has no more than ``MOST_PIECES`` pieces.
+
+    Examples
+    --------
+    >>> brief_references(f"R{n}" for n in range(5, 384, 6))
+    'R5 to R383 (every 6th)'
+    """
+    plain = short_ranges(refs)
+    pieces = plain.split(", ") if plain else []
+    if len(pieces) <= MOST_PIECES:
+        return plain
+    out: list[str] = []
+    numbers: dict[str, list[int]] = {}
+    for piece in pieces:
+        part = Part(piece, "", "")
+        if part.number and piece == f"{part.letters}{part.number}":
+            numbers.setdefault(part.letters, []).append(part.number)
+        else:
+            out.append(piece)  # a range already, or a reference of somebody else's making
+    for letters, left in numbers.items():
+        out += _in_steps(letters, left)
+    firsts = {text: Part(text.partition(" ")[0].partition("-")[0], "", "") for text in out}
+    return ", ".join(sorted(out, key=lambda text: (firsts[text].letters, firsts[text].number, text)))
+
+
+def _in_steps(letters: str, numbers: list[int]) -> list[str]:
+    """Numbers in rising order as few progressions: always the longest that begins with the first one left."""
+    left, texts = sorted(numbers), list[str]()
+    while left:
+        first, there, best = left[0], set(left), [left[0]]
+        for second in left[1:]:
+            step = second - first
+            if first + step * len(best) > left[-1]:
+                break  # wider steps reach the end in fewer
+            chain = list(takewhile(there.__contains__, count(first, step)))
+            best = max(best, chain, key=len)
+        if len(best) >= LEAST_STEPS:
+            texts.append(f"{letters}{best[0]} to {letters}{best[-1]} (every {_ordinal(best[1] - best[0])})")
+        else:
+            best = [first]
+            texts.append(f"{letters}{first}")
+        left = [n for n in left if n not in set(best)]
+    return texts
+
+
+def _ordinal(number: int) -> str:
+    ending = "th" if number % 100 in (11, 12, 13) else {1: "st", 2: "nd", 3: "rd"}.get(number % 10, "th")
+    return f"{number}{ending}"
+
+
 def _line(letters: str, key: str, refs: tuple[str, ...], part: Part, record: Record | None) -> BomLine:
     kind = record.kind if record else ""
     prices = tuple(sorted(record.prices, key=lambda b: b.quantity)) if record else ()
     evidence = dict(record.evidence) if record else {}
+    code, alternates = order_words(record) if record else ("", ())
     invented = any(e.kind == "invented" for name, e in evidence.items() if name.startswith("price"))
     return BomLine(
         key=key,
         letters=letters,
         refs=refs,
-        value=_value(part.value, kind),
+        value=_value(part.value, kind, record),
         amount=_amount(part.value),
         kind=kind,
-        description=record.description if record else "not in the catalogue",
+        description=record.description if record else f"not in the catalogue{f': {key}' if key else ''}",
         rating=_rating(record) if record else _stated_rating(part),
         tolerance=_tolerance(record) if record else part.field("tolerance"),
-        package=record.body.package if record else part.land_pattern,
+        package=package_words(record) if record else part.land_pattern,
         mount=record.mount if record else "",
-        order_code=(record.order_code or record.key) if record else key,
-        alternates=record.alternates if record else (),
+        order_code=code,
+        alternates=alternates,
         pack=record.pack if record else 1,
         prices=prices,
         invented=invented and bool(prices),
@@ -246,11 +322,11 @@ def _amount(value: str) -> float:
         return 0.0
 
 
-def _value(value: str, kind: str) -> str:
-    """The value with its unit for parts that have one, else as the netlist has it."""
+def _value(value: str, kind: str, record: Record | None) -> str:
+    """The value that the netlist has, with its unit for parts that have one; never a catalogue key."""
     unit = _UNITS.get(kind)
     if unit is None:
-        return value
+        return value_words(record, value) if record else value
     try:
         return format_quantity(read_value(value), unit, digits=6)
     except QuantityError:

@@ -35,12 +35,24 @@ def design_json(job: Job) -> bytes:
     -------
     bytes
         UTF-8, indented, a line end at the end; base SI units throughout.
+
+    Notes
+    -----
+    ``channels[].inside`` is the share of such channels whose control covers the asked range, ``boards_inside`` the
+    share of boards on which every channel does; each with its 95 % interval. Voltages of ``rails`` carry their
+    sign and are named by magnitude: ``least`` and ``greatest`` of a negative rail are -11.4 V and -12.6 V. All
+    other pairs of ``low`` and ``high`` are in order of value.
     """
     data = {
         "module": job.spec.module,
         **findings_json(job.report),
         "spec": resolved(job.spec),
         "channels": _channels(job.analyses),
+        "boards_inside": {
+            "share": job.analyses.boards_inside,
+            "low": job.analyses.boards_inside_low,
+            "high": job.analyses.boards_inside_high,
+        },
         "choices": [_choice(choice) for choice in job.design.choices],
         "parts": _parts(job.netlist, job.design),
         "rails": _rails(job.analyses),
@@ -162,15 +174,16 @@ def _parts(netlist: Netlist, design: Design) -> list[dict[str, Any]]:
 
 
 def _rails(analyses: Analyses) -> list[dict[str, Any]]:
+    """Rails at the bus and behind their diodes: signed, ``least`` and ``greatest`` by magnitude."""
     return [
         {
             "name": rail.name,
             "diode": rail.diode,
-            "bus": {"nominal": rail.bus_nominal, "low": rail.bus_low, "high": rail.bus_high},
+            "bus": {"nominal": rail.bus_nominal, "least": rail.bus_low, "greatest": rail.bus_high},
             "protected": {
                 "nominal": rail.protected_nominal,
-                "low": rail.protected_low,
-                "high": rail.protected_high,
+                "least": rail.protected_low,
+                "greatest": rail.protected_high,
             },
             "current": {
                 "typical": rail.current_typical,

@@ -12,6 +12,7 @@ from contextlib import suppress
 from modgen.catalogue.records import Amplifier, Capacitor, Control, Diode, Header, Resistor
 from modgen.catalogue.records import Part as Record
 from modgen.outputs.pages import Cell
+from modgen.outputs.partwords import order_words
 from modgen.outputs.wording import pin_words
 from modgen.units import capacitor_code, colour_bands, rkm_code, tolerance_letter, value_text
 
@@ -133,7 +134,8 @@ def _capacitor(record: Capacitor) -> Cell:
 
 
 def _type_number(record: Record) -> str:
-    return record.order_code or record.key
+    code, _ = order_words(record)
+    return code or "its type number"
 
 
 def net_words(net: str) -> str:

@@ -10,7 +10,7 @@ from dataclasses import dataclass
 from functools import cache
 from typing import TYPE_CHECKING
 
-from modgen.outputs.wording import percent, plural, quantity, short_ranges, signed, verdict
+from modgen.outputs.wording import percent, plural, prose, quantity, short_ranges, signed, verdict
 
 if TYPE_CHECKING:
     from jinja2 import Environment
@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from modgen.rules.contract import Report
 
 #: A table with no more rows than this is kept on one page when there is room.
-ROWS_KEPT_TOGETHER = 14
+ROWS_KEPT_TOGETHER = 3
 
 
 @dataclass(frozen=True)
@@ -118,7 +118,7 @@ def environment() -> Environment:
         lstrip_blocks=True,
         keep_trailing_newline=True,
     )
-    env.filters.update(q=quantity, signed=signed, percent=percent, refs=short_ranges, plural=plural)
+    env.filters.update(q=quantity, signed=signed, percent=percent, refs=short_ranges, plural=plural, prose=prose)
     return env
 
 

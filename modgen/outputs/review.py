@@ -6,14 +6,14 @@ from collections.abc import Iterable, Mapping
 from typing import TYPE_CHECKING, Any
 
 from modgen.outputs.bom import bom_lines
+from modgen.outputs.choicewords import choice_words
 from modgen.outputs.pages import Cell, Table, columns, render
 from modgen.outputs.review_figures import accuracy_tables, glide_tables, headroom_table, margin_cell, rails_table
-from modgen.outputs.wording import NOTHING, chosen, percent, plural, quantity, short_ranges, signed
+from modgen.outputs.wording import NOTHING, chosen, plural, quantity, short_ranges, signed
 from modgen.spec import resolved
 from modgen.units import UNITS
 
 if TYPE_CHECKING:
-    from modgen.design.model import Choice
     from modgen.outputs.model import Job
     from modgen.rules.contract import Checked, Finding
 
@@ -56,7 +56,7 @@ def review_html(job: Job) -> bytes:
             ("Parts on a board", str(len(job.netlist.parts))),
         ),
         "spec": spec_table(job),
-        "choices": tuple((choice, choice_margin(choice)) for choice in job.design.choices),
+        "choices": tuple(choice_words(job, choice) for choice in job.design.choices),
         "findings": tuple((f, _measure(f)) for f in job.report.findings if not f.waived),
         "rules": rules_table(job.report.checked),
         "glide": glide_tables(job),
@@ -104,25 +104,6 @@ def _flat(section: Mapping[str, Any], before: str = "") -> Iterable[tuple[str, s
             yield before + name, ", ".join(str(item) for item in value)
         else:
             yield before + name, str(value)
-
-
-def choice_margin(choice: Choice) -> str:
-    """What binds a choice and how much is left, in words.
-
-    Parameters
-    ----------
-    choice
-        From the design. [-]
-
-    Returns
-    -------
-    str
-        Empty when nothing binds.
-    """
-    if choice.margin is None:
-        return choice.binding
-    left = f"{percent(choice.margin)} left"
-    return f"{choice.binding}: {left}" if choice.binding else left
 
 
 def _measure(finding: Finding) -> str:
@@ -204,7 +185,7 @@ def bom_table(job: Job) -> Table:
             ", ".join(text for text in (line.rating, line.tolerance) if text) or NOTHING,
             line.package or NOTHING,
             line.description,
-            line.order_code,
+            line.order_code or ", ".join(line.alternates) or NOTHING,
         )
         for line in bom_lines(job.netlist, job.catalogue)
     ]

@@ -8,7 +8,7 @@ from modgen.analysis.model import Interval
 from modgen.outputs.benchtest import scale_words
 from modgen.outputs.marking import net_words
 from modgen.outputs.pages import Cell, Table, columns
-from modgen.outputs.wording import NOTHING, percent, quantity, short_ranges, signed
+from modgen.outputs.wording import NOTHING, grouped, number_words, percent, quantity, short_ranges, signed
 
 if TYPE_CHECKING:
     from modgen.outputs.model import Job
@@ -39,8 +39,12 @@ def _times(interval: Interval) -> tuple[str, str]:
     )
 
 
+def _share(share: float, low: float, high: float) -> tuple[str, str]:
+    return percent(share), f"{percent(low, 4)} to {percent(high, 4)}"
+
+
 def glide_tables(job: Job) -> tuple[Table, ...]:
-    """Glide of every channel: times, and the share of boards that cover the range.
+    """Glide of every channel: times, and the share of channels and of whole boards that cover the range.
 
     Parameters
     ----------
@@ -54,18 +58,16 @@ def glide_tables(job: Job) -> tuple[Table, ...]:
     """
     glide = job.spec.glide
     times: list[tuple[str, ...]] = []
-    shares: list[tuple[str, ...]] = []
+    alike: dict[tuple[str, ...], list[str]] = {}
     for c in job.analyses.glide:
         parts = short_ranges((c.isolating, c.control, *c.capacitors))
         times.append((str(c.channel), parts, *_times(c.shortest), *_times(c.middle), *_times(c.longest)))
-        shares.append(
-            (
-                str(c.channel),
-                percent(c.inside, 4),
-                f"{percent(c.inside_low, 4)} to {percent(c.inside_high, 4)}",
-                f"{c.boards:,}".replace(",", "\u00a0"),
-            )
-        )
+        share = (*_share(c.inside, c.inside_low, c.inside_high), grouped(c.boards))
+        alike.setdefault(share, []).append(str(c.channel))
+    shares = [(f"{number_words(numbers)}, each", *share) for share, numbers in alike.items()]
+    a = job.analyses
+    whole = _share(a.boards_inside, a.boards_inside_low, a.boards_inside_high)
+    shares.append((f"all {len(a.glide)} of a board", *whole, NOTHING))
     asked = f"{quantity(glide.shortest, 'time')} to {quantity(glide.longest, 'time')}"
     return (
         Table(
@@ -76,10 +78,15 @@ def glide_tables(job: Job) -> tuple[Table, ...]:
             tuple(times),
         ),
         Table(
-            f"Share of boards whose control covers the whole of {asked}",
-            columns("!Channel", "#Share", "#95 % interval (Wilson)", "#Boards simulated"),
+            f"How many such channels, and how many whole boards, cover the whole of {asked}",
+            columns("!Channels", "#Share", "#95 % interval (Wilson)", "#Channels simulated"),
             tuple(shares),
-            note="Every part is drawn from its tolerance, with a fixed seed.",
+            note=f"Of channels like these {percent(min(c.inside for c in a.glide))} cover the range; of boards, on "
+            f"which every channel must, {percent(a.boards_inside)}, if their parts differ independently. Parts of one "
+            "lot are alike, so the true share of boards lies between the two. Every part is drawn from its "
+            "tolerance, with a fixed seed."
+            if a.glide
+            else "",
         ),
     )
 
@@ -99,10 +106,12 @@ def accuracy_tables(job: Job) -> tuple[Table, ...]:
     """
     a = job.analyses.accuracy
 
-    def scale(share: float) -> str:
-        return scale_words(job, share)
+    def scale(share: float) -> str | Cell:
+        words = scale_words(job, share)
+        plain, _, beside = words.partition(" (")
+        return Cell(plain, more=(beside.removesuffix(")"),)) if beside else words
 
-    def volts(value: float) -> str:
+    def volts(value: float) -> str | Cell:
         return quantity(value, "voltage")
 
     def left(worst: float, budget: float) -> str | Cell:
@@ -127,7 +136,7 @@ def accuracy_tables(job: Job) -> tuple[Table, ...]:
                 left(a.offset_worst, a.offset_budget),
             ),
         ),
-        note=f"At {a.hot:g} °C the offset is up to {volts(a.offset_hot)}. An offset can be "
+        note=f"At {a.hot:g} °C the offset is up to {quantity(a.offset_hot, 'voltage')}. An offset can be "
         "tuned out; a scale error cannot.",
     )
     made = [sums]

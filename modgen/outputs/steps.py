@@ -12,6 +12,7 @@ from modgen.netlist.model import Part
 from modgen.outputs.boardfacts import records_of
 from modgen.outputs.marking import orientation, printed
 from modgen.outputs.pages import TICK, Cell, Column, Table, columns
+from modgen.outputs.partwords import value_words
 from modgen.outputs.wording import natural, plural, quantity, short_ranges
 
 if TYPE_CHECKING:
@@ -19,6 +20,9 @@ if TYPE_CHECKING:
 
 #: Parts whose bodies differ by less than this are of one height [m]: what a board lies flat on does not see it.
 HEIGHT_STEP = 0.05e-3
+
+#: Most digits of a value; no part of the IEC 60063 series has more than three.
+VALUE_DIGITS = 4
 
 _PANEL = ("jack", "control")  # last, in this order: heat comes to the controls once only
 
@@ -124,11 +128,11 @@ def _kind_words(record: Record) -> str:
 
 def _facts(record: Record, count: int) -> str:
     body = record.body
-    facts = [plural(count, "part"), f"{quantity(body.height, 'length', 2)} high"]
+    facts = [plural(count, "part"), f"{quantity(body.height, 'length')} high"]
     if body.pitch and body.pins == 2 and record.mount != "surface":
         facts.append(f"leads {quantity(body.pitch, 'length', 4)} apart")
     if body.pins == 2 and record.mount == "surface":
-        facts.append(f"{quantity(body.length, 'length', 2)} by {quantity(body.width, 'length', 2)}")
+        facts.append(f"{quantity(body.length, 'length')} by {quantity(body.width, 'length')}")
     return ", ".join(facts)
 
 
@@ -142,7 +146,8 @@ def _lines(job: Job, parts: Sequence[Part], records: Mapping[str, Record]) -> tu
         groups.setdefault((_size(record), part.value, record.key, way), []).append(part.ref)
     ordered = sorted(groups.items(), key=lambda item: (item[0][0], natural(item[1][0])))
     return tuple(
-        Line(tuple(refs), _value(records[refs[0]], key[1]), printed(records[refs[0]]), key[3]) for key, refs in ordered
+        Line(tuple(refs), value_words(records[refs[0]], key[1], VALUE_DIGITS), printed(records[refs[0]]), key[3])
+        for key, refs in ordered
     )
 
 
@@ -152,14 +157,6 @@ def _size(record: Record) -> float:
         if size is not None:
             return float(size)
     return 0.0
-
-
-def _value(record: Record, value: str) -> str:
-    for name in ("resistance", "capacitance"):
-        size = getattr(record, name, None)
-        if size is not None:
-            return quantity(size, name, 4)
-    return value
 
 
 def _notes(record: Record, parts: Sequence[Part], records: Mapping[str, Record]) -> tuple[str, ...]:

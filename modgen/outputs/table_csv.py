@@ -12,12 +12,12 @@ import io
 import re
 from typing import TYPE_CHECKING
 
-from modgen.outputs.bom import bom_lines, cost
+from modgen.outputs.bom import CURRENCY, bom_lines, cost
+from modgen.outputs.wording import CLEARED, NOT_CLEARED
 
 if TYPE_CHECKING:
     from modgen.outputs.model import Job
 
-NOT_CLEARED = "not cleared for ordering"
 NO_PRICE = "no price"
 HEADER = (
     "Line",
@@ -32,7 +32,7 @@ HEADER = (
     "Part",
     "Order code",
     "Alternates",
-    "Pack",
+    "Pack (orders are not rounded to it)",
     "Boards",
     "Needed",
     "Spares",
@@ -40,6 +40,7 @@ HEADER = (
     "To order",
     "Unit price",
     "Line total",
+    "Currency",
     "Prices",
     "Status",
 )
@@ -77,7 +78,7 @@ def write_bom_csv(job: Job) -> bytes:
     """
     lines = bom_lines(job.netlist, job.catalogue)
     order = cost(lines, job.spec.order.boards, job.spec.order.spares, job.stock)
-    status = "cleared" if job.report.cleared else NOT_CLEARED
+    status = CLEARED if job.report.cleared else NOT_CLEARED
     out = io.StringIO()
     writer = csv.writer(out, lineterminator="\r\n")
     writer.writerow(HEADER)
@@ -108,6 +109,7 @@ def write_bom_csv(job: Job) -> bytes:
                 each.to_order,
                 NO_PRICE if each.unit_price is None else f"{each.unit_price:.6g}",
                 NO_PRICE if each.total is None else f"{each.total:.2f}",
+                "" if each.total is None else CURRENCY,
                 "invented" if line.invented else "",
                 status,
             )

@@ -13,6 +13,9 @@ from modgen.units import format_quantity
 if TYPE_CHECKING:
     from modgen.rules.contract import Report
 
+#: The two verdicts, in the same words on every page, sheet and row.
+CLEARED, NOT_CLEARED = "Cleared for ordering", "Not cleared for ordering"
+
 #: The verdict names no more errors than this one by one.
 MOST_STANDING = 12
 
@@ -20,6 +23,16 @@ MOST_STANDING = 12
 NOTHING = "–"
 
 _NO_BREAK = "\u00a0"
+
+_UNIT = r"(?:[fpnµmkMGT]?(?:Ω|V|A|F|s|W|Hz)|cents?|[µm]?m[²³]?|mm[23]|K|dB|°C|EUR)"
+_VALUE_AND_UNIT = re.compile(rf"(?<=[0-9]) +(?=(?:%|{_UNIT}(?![\w²³])))")
+_SHARE = re.compile(r"(?<=[0-9])%")
+#: a hyphen before a number is a sign only where nothing stands before it
+_SIGN = re.compile(r"(?<![\w\u2013\u2212-])-(?=[0-9.])")
+_RAIL = re.compile(r"(?<![\w-])(V|BUS)-(?![\w-])")
+#: a count: a long whole number with a word behind it
+_COUNT = re.compile(r"(?<![\w.,-])[0-9]{5,}(?= [a-z]{2,})")
+_POWER = re.compile(r"(?<=mm)([23])(?!\w)")
 
 
 def quantity(value: float, kind: str, digits: int = 3) -> str:
@@ -40,6 +53,47 @@ def quantity(value: float, kind: str, digits: int = 3) -> str:
         ``−12 V``, ``4.7 kΩ``.
     """
     return format_quantity(value, kind, digits).replace("-", "\u2212").replace(" ", _NO_BREAK)
+
+
+def grouped(number: int) -> str:
+    """A whole number with its digits in threes from five digits on, as ISO 80000-1 has it.
+
+    Parameters
+    ----------
+    number
+        A count. [-]
+
+    Returns
+    -------
+    str
+        ``1 860 624`` with spaces that do not break; ``4096`` as it is.
+    """
+    return f"{number:,}".replace(",", _NO_BREAK) if abs(number) >= 10_000 else str(number)
+
+
+def prose(text: str) -> str:
+    """A sentence of another part of the program, set as pages set theirs; the words stay as they are.
+
+    Parameters
+    ----------
+    text
+        Plain text with values as programs write them. [-]
+
+    Returns
+    -------
+    str
+        No break between a number and its unit, a space before ``%``, a true minus sign before a number, long
+        counts in groups of three digits.
+
+    Examples
+    --------
+    >>> prose("-5 V is 2.8% of 1860624 parts on 34 mm2").replace("\u00a0", "~")
+    '−5~V is 2.8~% of 1~860~624 parts on 34~mm²'
+    """
+    text = _SIGN.sub("\u2212", _RAIL.sub("\\1\u2212", text))
+    text = _COUNT.sub(lambda match: grouped(int(match[0])), text)
+    text = _SHARE.sub(_NO_BREAK + "%", _VALUE_AND_UNIT.sub(_NO_BREAK, text))
+    return _POWER.sub(lambda match: "²³"[int(match[1]) - 2], text)
 
 
 def signed(value: float, kind: str, digits: int = 3) -> str:
@@ -99,6 +153,8 @@ def natural(text: str) -> tuple[tuple[int, int, str], ...]:
 def short_ranges(refs: Iterable[str]) -> str:
     """References in as few words as possible, as on the parts list but with a true range dash.
 
+    Many at even steps are put together (:func:`modgen.outputs.bom.brief_references`).
+
     Parameters
     ----------
     refs
@@ -114,7 +170,29 @@ def short_ranges(refs: Iterable[str]) -> str:
     >>> short_ranges(["R7", "R2", "R1", "R3"])
     'R1–R3, R7'
     """
-    return bom.short_ranges(set(refs)).replace("-", "\u2013")
+    return bom.brief_references(set(refs)).replace("-", "\u2013")
+
+
+def number_words(numbers: Iterable[str]) -> str:
+    """Numbers of channels or pins in words, three or more in a row as a range.
+
+    Parameters
+    ----------
+    numbers
+        Whole numbers as text, in any order. [-]
+
+    Returns
+    -------
+    str
+        ``1, 2``, ``3 to 8``.
+
+    Examples
+    --------
+    >>> number_words(["4", "1", "2", "3", "7"])
+    '1 to 4, 7'
+    """
+    ordered = sorted(set(numbers), key=natural)
+    return bom.short_ranges(f"P{number}" for number in ordered).replace("P", "").replace("-", " to ")
 
 
 def pin_words(numbers: Iterable[str]) -> str:
@@ -135,9 +213,8 @@ def pin_words(numbers: Iterable[str]) -> str:
     >>> pin_words(["8", "3", "4", "5", "6", "7"]), pin_words(["10", "9"])
     ('pins 3 to 8', 'pins 9, 10')
     """
-    ordered = sorted(set(numbers), key=natural)
-    text = bom.short_ranges(f"P{number}" for number in ordered).replace("P", "").replace("-", " to ")
-    return f"{'pin' if len(ordered) == 1 else 'pins'} {text}"
+    found = set(numbers)
+    return f"{'pin' if len(found) == 1 else 'pins'} {number_words(found)}"
 
 
 def plural(count: int, word: str) -> str:
@@ -221,7 +298,7 @@ def verdict(report: Report) -> Verdict:
         for f in report.findings
         if f.level == "error" and not f.waived
     )
-    headline = "Cleared for ordering" if report.cleared else "Not cleared for ordering"
+    headline = CLEARED if report.cleared else NOT_CLEARED
     if len(standing) > MOST_STANDING:
         standing = (*standing[:MOST_STANDING], f"and {len(standing) - MOST_STANDING} more, all of them under Findings")
     return Verdict(report.cleared, headline, reason[0].upper() + reason[1:] + ".", standing)

@@ -111,6 +111,8 @@ class Rule:
     subject: ClassVar[str] = ""  # wiring, supply, ratings, signal, function, ordering
     level: ClassVar[str] = "error"
     needs_spec: ClassVar[bool] = False
+    #: whether it makes sense only where 0 V and the rails bear the names that the netlist conventions give them
+    needs_rails: ClassVar[bool] = True
     runs_last: ClassVar[bool] = False  # looks at what the other rules found
 
     def __init_subclass__(cls) -> None:

@@ -19,6 +19,7 @@ from modgen.catalogue import Catalogue
 from modgen.netlist.model import Netlist
 from modgen.problems import InputError, Place, Problem
 from modgen.rules.contract import LEVELS, Checked, Context, Finding, Measurement, Report, Rule
+from modgen.rules.supplies import blind
 from modgen.spec.model import Spec, Waiver
 
 #: The folders that hold rules, one a subject, in the order in which people read them.
@@ -126,7 +127,7 @@ def _finding(rule: Rule, measurement: Measurement) -> Finding:
 def _checked(rule: Rule, measured: Sequence[Measurement]) -> Checked:
     with_margin = [m for m in measured if m.margin is not None]
     if with_margin:
-        worst = min(with_margin, key=lambda m: (m.margin, m.what))
+        worst = min(with_margin, key=lambda m: (m.margin, natural(m.what)))
         return Checked(rule.name, len(measured), worst.margin, worst.what)
     faulty = next((m for m in measured if m.fault is not None), None)
     return Checked(rule.name, len(measured), None, faulty.what if faulty else "")
@@ -196,9 +197,13 @@ def judge(
     waivers = spec.waive if spec is not None else ()
     ran: list[str] = []
     problems: set[Problem] = set()
+    without_rails = blind(context.board)
     for rule in sorted(chosen, key=lambda rule: rule.runs_last):
         if rule.needs_spec and spec is None:
             checked[rule.name] = Checked(rule.name, 0, None, "", judged=False, not_judged=NO_SPEC)
+            continue
+        if rule.needs_rails and without_rails:
+            checked[rule.name] = Checked(rule.name, 0, None, "", judged=False, not_judged=without_rails)
             continue
         seen = replace(context, findings=tuple(findings), ran=tuple(ran)) if rule.runs_last else context
         try:

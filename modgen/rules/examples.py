@@ -84,14 +84,36 @@ C2 x7r-radial-50v-100n 1=V+ 2=0V role=decoupling serves=U1
 C3 electrolytic-radial-25v-10u 1=V+ 2=0V role=reservoir
 """
 
-BOARDS = {"lane": LANE, "single": SINGLE}
+#: Two lanes, the second input falling back on the first, with the output resistors inside the loops.
+PAIR = """
+start from: lane
+spec: channels 2
+U1 6=CH1_FB
+R6 metal-film-0207-10k 1=CH1_OUT 2=CH1_FB role=feedback channel=1
+C6 c0g-radial-100v-470p 1=CH1_DRIVE 2=CH1_FB role=compensation channel=1
+J4 jack-35-switched T=CH2_IN TN=CH1_IN S=0V role=input-jack channel=2
+J5 jack-35-switched T=CH2_OUT S=0V role=output-jack channel=2
+U2 tl072-dip8 1=CH2_BUF 2=CH2_BUF 3=CH2_A 4=V- 5=CH2_GLIDE 6=CH2_FB 7=CH2_DRIVE 8=V+ role=amplifier
+R11 metal-film-0207-1m0 1=CH2_IN 2=0V role=terminator channel=2
+R12 metal-film-0207-10k 1=CH2_IN 2=CH2_A role=input-series channel=2
+R13 metal-film-0207-2k2 1=CH2_BUF 2=CH2_CTL role=isolating channel=2
+R14 control-16mm-linear-1m0 1=CH2_CTL 2=CH2_GLIDE 3=CH2_GLIDE role=glide-control channel=2
+R15 metal-film-0207-1k0 1=CH2_DRIVE 2=CH2_OUT role=output-series channel=2
+R16 metal-film-0207-10k 1=CH2_OUT 2=CH2_FB role=feedback channel=2
+C11 film-pp-box-250v-1u0 1=CH2_GLIDE 2=0V role=glide-capacitor channel=2
+C12 x7r-radial-50v-100n 1=V+ 2=0V role=decoupling serves=U2
+C13 x7r-radial-50v-100n 1=V- 2=0V role=decoupling serves=U2
+C16 c0g-radial-100v-470p 1=CH2_DRIVE 2=CH2_FB role=compensation channel=2
+"""
+
+BOARDS = {"lane": LANE, "single": SINGLE, "pair": PAIR}
 
 EXAMPLE_SPEC = Spec(
     module="Example",
     channels=1,
     jacks=Jacks(1, 1),
     rails=Rails(12.0, -12.0, 0.05),
-    glide=Glide(10e-3, 1.0),
+    glide=Glide(10e-3, 1.0, taper="linear"),
     normalling="chain",
     signal=Signal(),
     accuracy=Accuracy(scale=0.02, offset=0.2),
@@ -103,7 +125,8 @@ EXAMPLE_SPEC = Spec(
 
 #: spec keys that examples may change, and what kind of text they take
 SPEC_KEYS = {
-    "channels": "whole",
+    "channels": "whole",  # and as many sockets of each kind
+    "normalling": "word",
     "rails.positive": "voltage",
     "rails.negative": "voltage",
     "rails.tolerance": "ratio",
@@ -111,6 +134,7 @@ SPEC_KEYS = {
     "glide.longest": "time",
     "glide.cover": "word",
     "glide.measure": "word",
+    "glide.taper": "word",
     "signal.source": "resistance",
     "signal.load": "resistance",
     "signal.span": "span",
@@ -282,7 +306,9 @@ def _changed(spec: Spec, text: str) -> Spec:
     if kind is None:
         raise ExampleError(f"spec key {key!r} cannot be changed in an example")
     if kind == "whole":
-        return replace(spec, channels=int(value))
+        return replace(spec, channels=int(value), jacks=Jacks(int(value), int(value)))
+    if key == "normalling":
+        return replace(spec, normalling=value)
     section, _, name = key.partition(".")
     held = getattr(spec, section)
     if kind == "span":

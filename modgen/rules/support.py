@@ -193,15 +193,19 @@ def ground_nets(board: Board) -> tuple[str, ...]:
 def rails(board: Board) -> tuple[Rail, ...]:
     """The rails, positive first, traced from the header pins; by name when there is no header.
 
-    A net that an amplifier is not fed from is still a rail: what matters is where the bus gets to.
+    A net that an amplifier is not fed from is still a rail: what matters is where the bus gets to. Of a header
+    that is wired the wrong way round the rails are those that the board means (see :func:`header_turned`).
     """
     grounds = set(ground_nets(board))
     headers = bool(board.parts_of("header"))
     fed = {net for s in board.sections for net in (s.positive, s.negative) if net} - grounds
+    positive_pins, negative_pins = HEADER_POSITIVE, HEADER_NEGATIVE
+    if header_turned(board):
+        positive_pins, negative_pins = negative_pins, positive_pins
     out = []
     for sign, pins, bus_name, name in (
-        (1, HEADER_POSITIVE, board.bus_positive, board.positive),
-        (-1, HEADER_NEGATIVE, board.bus_negative, "V-"),
+        (1, positive_pins, board.bus_positive, board.positive),
+        (-1, negative_pins, board.bus_negative, "V-"),
     ):
         buses = header_nets(board, pins) if headers else ()
         if not headers:
@@ -221,6 +225,7 @@ def rails(board: Board) -> tuple[Rail, ...]:
 
 def _filtered(board: Board, net: str, stop: set[str]) -> set[str]:
     """A net and those behind resistors that are no more than a filter in the rail."""
+    stop = stop | {s.output for s in board.sections if s.output}  # what an amplifier drives is no rail
     found, queue = {net}, [net]
     while queue:
         for step in board.between(queue.pop(), "resistor"):
@@ -229,6 +234,51 @@ def _filtered(board: Board, net: str, stop: set[str]) -> set[str]:
                 found.add(step.net)
                 queue.append(step.net)
     return found
+
+
+def header_turned(board: Board) -> bool:
+    """Whether the header carries the negative supply where the positive one belongs, and the other way round.
+
+    The diodes and the supply pins behind them say what a bus is meant to be; where they do not agree, or there are
+    none, the names of the nets do. Diodes alone, or packages alone, the wrong way round are their own fault.
+    """
+    over = {s.positive for s in board.sections if s.positive}
+    under = {s.negative for s in board.sections if s.negative} - set(ground_nets(board))
+    at_positive = _meant(board, header_nets(board, HEADER_POSITIVE), over, under)
+    at_negative = _meant(board, header_nets(board, HEADER_NEGATIVE), over, under)
+    if at_positive is None:  # nothing at all is connected there
+        return at_negative == 1
+    return at_positive == -1 and at_negative in (1, None)
+
+
+def _meant(board: Board, buses: tuple[str, ...], over: set[str], under: set[str]) -> int | None:
+    """What nets at the header are meant to carry: 1 positive, -1 negative, 0 not known; None for no nets."""
+    stop = {*buses, *ground_nets(board)}
+    votes, names = set(), set()
+    for bus in buses:
+        for step in board.between(bus, "diode"):
+            reached = _filtered(board, step.net, stop)
+            if step.pin == "2" and reached & over:
+                votes.add(1)
+            if step.pin == "1" and reached & under:
+                votes.add(-1)
+        if bus in (board.bus_positive, board.positive):
+            names.add(1)
+        if bus in (board.bus_negative, "V-"):
+            names.add(-1)
+    if not buses:
+        return None
+    said = votes or names
+    return said.pop() if len(said) == 1 else 0
+
+
+def pins_text(ref: str, pins: Iterable[str]) -> str:
+    """Pins of a part as people say them: ``pin 3 of J1``, ``pins 1 and 2 of J1``, ``pins 3 to 8 of J1``."""
+    found = list(pins)
+    numbers = [int(pin) for pin in found if pin.isdigit()]
+    if len(found) > 2 and len(numbers) == len(found) and numbers == list(range(numbers[0], numbers[-1] + 1)):
+        return f"pins {found[0]} to {found[-1]} of {ref}"
+    return f"pin{'s' if len(found) > 1 else ''} {listed(found)} of {ref}"
 
 
 def may_stay_open(board: Board, ref: str, pin: str) -> str:
@@ -245,7 +295,8 @@ def may_stay_open(board: Board, ref: str, pin: str) -> str:
     if kind == "header":
         grounds = set(ground_nets(board))
         fed = {(s.negative in grounds) for s in board.sections}
-        if pin in HEADER_NEGATIVE and fed == {True} and not header_nets(board, HEADER_NEGATIVE):
+        unused = HEADER_POSITIVE if header_turned(board) else HEADER_NEGATIVE
+        if pin in unused and fed == {True} and not header_nets(board, unused):
             return "the board has no negative rail"
     return ""
 
@@ -255,7 +306,10 @@ def is_input(board: Board, ref: str) -> bool:
 
     A socket that nothing leads to counts as an input: its switch contact would be as open as its tip.
     """
-    tip = board.net(ref, "T")
+    tip, sleeve = board.net(ref, "T"), board.net(ref, "S")
+    grounds = ground_nets(board)
+    if tip in grounds and sleeve not in grounds:
+        tip = sleeve  # tip and sleeve are exchanged: the signal is on the sleeve
     if tip is None:
         return True
     outputs = {s.output for s in board.sections if s.output}
@@ -289,7 +343,8 @@ def headroom_measurement(stage: Headroom, fault: Fault) -> Measurement:
     -------
     Measurement
         Its margin is the distance to the limit as a share of half the range: of the limit itself, where the
-        range lies evenly about 0 V.
+        range lies evenly about 0 V. Where the low end is lost on a single supply, and the offset budget covers
+        that, what is lost is held against the budget.
     """
     at_top = stage.can_high - stage.needed_high
     at_bottom = stage.needed_low + stage.allowance - stage.can_low
@@ -305,6 +360,17 @@ def headroom_measurement(stage: Headroom, fault: Fault) -> Measurement:
     }
     half = (stage.can_high - stage.can_low) / 2
     margin = settled(distance / half) if half > 0 else -1.0
+    if at_bottom < at_top and stage.shortfall > 0 and stage.allowance > 0 and margin >= 0:
+        lost, most = (format_quantity(value, "voltage", 4) for value in (stage.shortfall, stage.allowance))
+        return Measurement(
+            parts=stage.parts,
+            what=f"{stage.stage} {stage.subject}: the lowest {lost} are lost, of {most} that the offset budget covers",
+            measured=stage.shortfall,
+            limit=stage.allowance,
+            unit="V",
+            margin=left(stage.shortfall, stage.allowance),
+            key="signal.span",
+        )
     return Measurement(
         parts=stage.parts,
         what=f"{stage.stage} {stage.subject}: {texts['needed']} of {texts['can']}",

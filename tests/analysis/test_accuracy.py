@@ -7,7 +7,7 @@ from dataclasses import replace
 
 import pytest
 
-from modgen.analysis.accuracy import HOT, accuracy_budget, offset_terms, scale_terms
+from modgen.analysis.accuracy import accuracy_budget, drift_terms, offset_terms, scale_terms
 from modgen.analysis.offset import section_bias
 from modgen.analysis.scale import terminators_seen
 from modgen.spec.model import Accuracy, Signal
@@ -101,7 +101,7 @@ def test_offset_by_hand(lanes):
 
 
 def test_hot_the_bias_is_sixteen_times_as_much_and_offsets_have_drifted(lanes):
-    cold, hot = offset_of(lanes().exact()), offset_of(lanes().exact(), HOT)
+    cold, hot = offset_of(lanes().exact()), offset_of(lanes().exact(), 65.0)
     assert hot["bias current, output buffer"] == pytest.approx(16 * cold["bias current, output buffer"])
     assert 1e3 * hot["bias current, output buffer"] == pytest.approx(3.2, abs=0.05)
     assert hot["offset voltage, input buffer"] == pytest.approx(10.4e-3)
@@ -177,3 +177,98 @@ def test_a_board_without_lanes_has_no_terms(lanes):
 
 def test_a_source_without_resistance_loses_nothing(lanes):
     assert scale_of(lanes(), replace(SIGNAL, source=0.0))["source into terminator"] == 0.0
+
+
+def test_both_ends_of_the_stated_span(lanes):
+    budget = replace(BUDGET, temperature=(5.0, 45.0))
+    found = accuracy_budget(lanes().exact().board(), SIGNAL, budget)
+    assert (found.cold, found.hot) == (5.0, 45.0)
+    resistance = 1.0022e6 + 1e9 / 1.001e6 + 10e3
+    # either way the offsets drift by 20 K; the bias doubles twice one way and stays the other
+    assert found.offset_cold == pytest.approx(2 * 10.2e-3 + 200e-12 * resistance, rel=1e-6)
+    assert found.offset_hot == pytest.approx(2 * 10.2e-3 + 800e-12 * resistance, rel=1e-6)
+    # what is judged is at 25 degC, whatever the span
+    assert found.offset_worst == accuracy_budget(lanes().exact().board(), SIGNAL, BUDGET).offset_worst
+
+
+def test_the_span_may_lie_on_one_side_of_room_temperature(lanes):
+    found = accuracy_budget(lanes().exact().board(), SIGNAL, replace(BUDGET, temperature=(-20.0, 0.0)))
+    assert found.offset_cold - found.offset_hot == pytest.approx(2 * 10e-6 * 20)
+    assert found.offset_hot == pytest.approx(found.offset_worst + 2 * 10e-6 * 25)
+
+
+def drift_of(bench, cold=15.0, hot=65.0):
+    board = bench.board()
+    return {t.name: t for t in drift_terms(board, board.channels[0], SIGNAL, cold, hot)}
+
+
+def test_drift_between_the_ends_by_hand(lanes):
+    found = drift_of(lanes(inside=True).exact())
+    # 10 uV/K over 50 K; 200 pA is 100 pA at 15 degC and 3.2 nA at 65 degC
+    assert found["offset voltage, input buffer"].worst == pytest.approx(0.5e-3)
+    assert found["offset voltage, output buffer"].worst == pytest.approx(0.5e-3)
+    assert found["bias current, output buffer"].worst == pytest.approx(3.1e-9 * 1.0022e6)
+    assert found["bias current, input buffer"].worst == pytest.approx(3.1e-9 * (1e9 / 1.001e6 + 10e3))
+    assert found["bias current, feedback resistor"].worst == pytest.approx(3.1e-9 * 10e3)
+    assert found["bias current, output buffer"].source == ("U1B: 100 pA at 15 °C, 3.2 nA at 65 °C, through 1 MΩ")
+    budget = accuracy_budget(lanes(inside=True).exact().board(), SIGNAL, BUDGET)
+    assert budget.drift == tuple(found.values())
+    assert {term.kind for term in budget.drift} == {"drift"}
+    assert budget.drift_worst == pytest.approx(sum(t.worst for t in found.values()))
+    assert budget.drift_rss == pytest.approx(math.sqrt(sum(t.worst**2 for t in found.values())))
+
+
+def test_inputs_on_one_source_drift_together(lanes):
+    found = drift_of(lanes(3, inputs=1).exact())
+    assert found["bias current, inputs that share the source"].worst == pytest.approx(2 * 3.1e-9 * 1e9 / 1.001e6)
+
+
+def test_what_does_not_move_is_not_listed(lanes):
+    assert list(drift_of(lanes(amplifier_key="lm358"))) == [
+        "offset voltage, input buffer",
+        "offset voltage, output buffer",
+    ]
+    assert drift_of(lanes(), 30.0, 30.0) == {}
+    with pytest.raises(ValueError, match=r"^from 65 degC to 15 degC: the colder end comes first$"):
+        drift_of(lanes(), 65.0, 15.0)
+
+
+def test_the_lane_that_drifts_most_is_the_one_that_is_reported(lanes):
+    found = accuracy_budget(lanes(3).value("R23", "2.2M").board(), SIGNAL, BUDGET)
+    assert found.largest_drift.source.startswith("U2B: ")
+    assert found.largest_drift.worst == pytest.approx(3.1e-9 * (2.64e6 + 2222))
+
+
+def test_the_largest_terms_are_named_with_what_would_reduce_them(lanes):
+    found = accuracy_budget(lanes().board(), SIGNAL, BUDGET)
+    assert (found.largest_scale.name, found.largest_scale.remedy) == (
+        "output resistor into load",
+        "the output resistor inside the feedback loop, or a smaller one",
+    )
+    assert (found.largest_offset.name, found.largest_offset.remedy) == (
+        "offset voltage, input buffer",
+        "an amplifier with less offset",
+    )
+    assert (found.largest_drift.name, found.largest_drift.remedy) == (
+        "bias current, output buffer",
+        "an amplifier with less bias current, or a smaller control with a larger capacitor",
+    )
+    inside = accuracy_budget(lanes(inside=True).board(), SIGNAL, BUDGET)
+    assert inside.largest_scale.name == "source into terminator"
+
+
+def test_nothing_is_largest_of_nothing(lanes):
+    found = accuracy_budget(lanes().move("C10", "2", "").board(), SIGNAL, BUDGET)
+    assert (found.largest_scale, found.largest_offset, found.largest_drift) == (None, None, None)
+    assert (found.drift, found.drift_worst, found.offset_cold) == ((), 0.0, 0.0)
+
+
+def test_a_smaller_input_resistor_is_what_helps_the_input(lanes):
+    board = lanes(inside=True).board()
+    remedies = {t.name: t.remedy for t in offset_terms(board, board.channels[0], SIGNAL)}
+    assert remedies["bias current, input buffer"] == (
+        "an amplifier with less bias current, or a smaller resistor before its input"
+    )
+    assert remedies["bias current, feedback resistor"] == (
+        "an amplifier with less bias current, or a smaller feedback resistor"
+    )

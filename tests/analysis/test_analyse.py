@@ -9,7 +9,7 @@ import time
 import pytest
 
 from modgen.analysis import analyse
-from modgen.analysis.glide import covering
+from modgen.analysis.montecarlo import draw_boards
 from modgen.problems import InputError
 
 
@@ -49,7 +49,7 @@ def test_a_netlist_of_nothing(empty_bench, spec):
 def test_sixty_four_lanes_take_no_time(lanes, spec):
     bench = lanes(64)
     analyse(lanes().netlist(), bench.shelf, spec)
-    covering.cache_clear()
+    draw_boards.cache_clear()
     start = time.perf_counter()
     analyse(bench.netlist(), bench.shelf, spec)
     assert time.perf_counter() - start < 2.0

@@ -1,14 +1,13 @@
-"""Times of a lane by hand (design section 11), corners, and the share over tolerance."""
+"""Times of a lane by hand (design section 11), corners, shares of boards, and how alike channels are."""
 
 from __future__ import annotations
 
 import math
-import time
 from dataclasses import replace
 
 import pytest
 
-from modgen.analysis.glide import BOARDS, LaneValues, channel_glides, covering, time_at
+from modgen.analysis.glide import LaneValues, boards_inside, channel_glides, matchings, time_at
 from modgen.spec.model import Glide
 
 LN9 = math.log(9)
@@ -99,61 +98,85 @@ def test_time_rises_with_rotation_and_meets_the_ends(lanes):
     )
 
 
-def test_every_draw_stays_within_the_corners(lanes):
-    values = values_of(lanes())
-    low, high = values.interval(1.0, LN9).low, values.interval(1.0, LN9).high
-    anything = 1e9
-    assert covering(values, LN9, anything, low) == BOARDS
-    assert covering(values, LN9, anything, high) == 0
-    assert covering(values, LN9, values.interval(0.0, LN9).high, 0.0) == BOARDS
-    assert covering(values, LN9, values.interval(0.0, LN9).low, 0.0) == 0
-
-
-def test_the_share_of_one_tolerance_is_its_length(lanes):
-    # only the control varies, 0.8 to 1.2 Mohm: the longest is enough in three quarters of its range
-    bench = lanes().exact()
-    bench.parts["R13"][3]["tolerance"] = "20%"
-    values = values_of(bench)
-    longest = LN9 * (2200 + 0.9e6) * 1e-6
-    assert covering(values, LN9, 1.0, longest) / BOARDS == pytest.approx(0.75, abs=0.004)
-
-
-def test_the_share_of_two_tolerances_is_their_area(lanes):
-    # R 0.8 to 1.2, C 0.95 to 1.05: RC above 95 % of its greatest, 1.197, has the area
-    # (1.05 * 0.06 - 1.197 ln(1.2 / 1.14)) / (0.4 * 0.1)
-    bench = lanes().value("R12", "0")
-    share = covering(values_of(bench), 1.0, 1e9, 1.197) / BOARDS
-    assert share == pytest.approx((1.05 * 0.06 - 1.197 * math.log(1.2 / 1.14)) / 0.04, abs=0.002)
-
-
-def test_end_resistance_is_drawn_from_nothing_to_its_greatest(lanes):
-    bench = lanes().exact()
-    bench.shelf = bench.shelf.changed("pot", end_share=0.01)
-    # 2.2 kohm and up to 10 kohm left; asked for what 2.2 kohm and 4 kohm give
-    share = covering(values_of(bench), LN9, LN9 * 6200e-6, 0.0) / BOARDS
-    assert share == pytest.approx(0.4, abs=0.004)
-
-
 def test_interval_of_the_share_holds_it(lanes):
     found = glide_of(lanes())
-    assert found.boards == BOARDS
+    assert found.boards == 1_000_000
     assert found.inside_low < found.inside < found.inside_high
-    assert found.inside_high - found.inside_low < 0.005
+    # 1.96 sqrt(p (1 - p) / n) to either side
+    half = 1.96 * math.sqrt(found.inside * (1 - found.inside) / 1e6)
+    assert found.inside_high - found.inside_low == pytest.approx(2 * half, rel=1e-3)
 
 
-def test_equal_lanes_are_drawn_once_and_quickly(lanes):
-    board = lanes(16).board()
-    covering.cache_clear()
-    channel_glides(lanes().board(), replace(ASKED, longest=1.0))  # numpy is loaded
-    covering.cache_clear()
-    start = time.perf_counter()
-    found = channel_glides(board, ASKED)
-    assert time.perf_counter() - start < 1.0
-    assert (covering.cache_info().misses, covering.cache_info().hits) == (1, 15)
-    assert len({one.inside for one in found}) == 1
+def test_channels_of_equal_values_have_one_share_and_a_narrower_interval(lanes):
+    found = channel_glides(lanes(4).board(), ASKED)
+    (alone,) = channel_glides(lanes().board(), ASKED)
+    assert len({(one.inside, one.inside_low, one.inside_high) for one in found}) == 1
+    width, lone = (one.inside_high - one.inside_low for one in (found[0], alone))
+    assert width == pytest.approx(lone / 2, rel=0.01)
+    assert found[0].inside == pytest.approx(alone.inside, abs=0.002)
 
 
-def test_the_same_board_gives_the_same_share(lanes):
-    first = glide_of(lanes()).inside
-    covering.cache_clear()
-    assert glide_of(lanes()).inside == first
+def test_share_of_boards(lanes):
+    assert boards_inside(lanes().move("C10", "2", "").board(), ASKED) == (0.0, 0.0, 0.0)
+    (alone,) = channel_glides(lanes().board(), ASKED)
+    assert boards_inside(lanes().board(), ASKED) == (alone.inside, alone.inside_low, alone.inside_high)
+    share, low, high = boards_inside(lanes(3).board(), ASKED)
+    (first, _, _) = channel_glides(lanes(3).board(), ASKED)
+    # drawn together, not multiplied; independent parts make both the same
+    assert share == pytest.approx(first.inside**3, abs=0.002)
+    assert low < share < high
+
+
+def test_one_slow_channel_fails_every_board(lanes):
+    bench = lanes(2).value("R23", "470k")
+    assert boards_inside(bench.board(), ASKED)[0] == 0.0
+    first, second = channel_glides(bench.board(), ASKED)
+    assert first.inside > 0.5
+    assert second.inside == 0.0
+
+
+def test_matching_of_two_channels_by_hand(lanes):
+    # only the controls vary, from a = 0.8 to b = 1.2: the share of pairs further apart than r is
+    # (b - r a)^2 / (r (b - a)^2), which is 5 % at r = 1.416 and a half at r = 1.135
+    bench = lanes(2).exact().value("R12", "0").value("R22", "0")
+    for control in ("R13", "R23"):
+        bench.parts[control][3]["tolerance"] = "20%"
+    (middle, whole) = matchings(bench.board(), ASKED)
+    assert (middle.rotation, whole.rotation, whole.boards) == (0.5, 1.0, 1_000_000)
+    for found in (middle, whole):
+        assert found.nominal == pytest.approx(0.0)
+        assert found.worst == pytest.approx(0.5)
+        for share, within in ((0.05, found.most), (0.5, found.half)):
+            ratio = 1 + within
+            assert (1.2 - 0.8 * ratio) ** 2 / (0.16 * ratio) == pytest.approx(share, abs=0.002)
+
+
+def test_matching_is_better_where_fixed_resistors_decide(lanes):
+    ends = {found.rotation: found for found in matchings(lanes(2).board(), ASKED)}
+    assert sorted(ends) == [0.0, 0.5, 1.0]
+    # 1 % resistors, 5 % capacitors and at most 2 ohm left at one end; a 20 % control at the other
+    assert ends[0.0].worst == pytest.approx(((2200 * 1.01 + 2) * 1.05) / (2200 * 0.99 * 0.95) - 1)
+    assert ends[1.0].worst == pytest.approx((1.2e6 + 2222) * 1.05 / ((0.8e6 + 2178) * 0.95) - 1)
+    assert ends[0.0].most < 0.11 < 0.35 < ends[1.0].most < ends[1.0].worst
+
+
+def test_matching_counts_what_differs_by_design_and_by_number(lanes):
+    bench = lanes(2).exact().value("C20", "470n")
+    for found in matchings(bench.board(), ASKED):
+        if found.rotation:
+            assert found.nominal == found.worst == pytest.approx(1 / 0.47 - 1)
+            assert found.half == found.most == pytest.approx(1 / 0.47 - 1)
+    two, eight = matchings(lanes(2).board(), ASKED), matchings(lanes(8).board(), ASKED)
+    assert all(few.most < many.most < many.worst for few, many in zip(two, eight, strict=True))
+
+
+def test_one_channel_or_none_matches_nothing(lanes):
+    assert matchings(lanes().board(), ASKED) == ()
+    assert matchings(lanes().move("C10", "2", "").board(), ASKED) == ()
+
+
+def test_matching_does_not_depend_on_the_measure(lanes):
+    board = lanes(2).board()
+    other = replace(ASKED, measure="settle", step=1.0, within=5 / 1200)
+    plain, settled = matchings(board, ASKED), matchings(board, other)
+    assert [found.most for found in plain] == [found.most for found in settled]

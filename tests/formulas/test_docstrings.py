@@ -20,14 +20,37 @@ EXAMPLES = {
     "land_pattern": 7,
     "leakage": 5,
     "loading": 3,
+    "noise": 4,
     "pitch": 4,
     "series": 3,
+    "shorts": 2,
+    "stability": 7,
     "supply": 4,
     "tolerance": 5,
 }
 
 #: units that a docstring may use, in base SI but for the degrees, decibels and cents that people think in
-KNOWN = {"-", "V", "A", "ohm", "F", "s", "m", "W", "K", "degC", "dB", "cents", "1/s", "A, V"}
+KNOWN = {
+    "-",
+    "V",
+    "A",
+    "ohm",
+    "F",
+    "s",
+    "m",
+    "W",
+    "K",
+    "degC",
+    "dB",
+    "cents",
+    "1/s",
+    "A, V",
+    "Hz",
+    "deg",
+    "V/rtHz",
+    "A/rtHz",
+    "ohm, F, ohm",
+}
 
 NAME = re.compile(r"^([*\w, ]+) : .+$")
 

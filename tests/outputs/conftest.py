@@ -264,6 +264,9 @@ def make_job(
             RailPower("V-", "D2", -12.0, -11.4, -12.6, -11.75, -11.1, -12.4, 5.6e-3, 10e-3, 20e-3),
         ),
         (Bound("CH1_GLIDE", -12.6, 12.6), Bound("FLOATING", float("-inf"), float("inf"))),
+        boards_inside=0.9604,
+        boards_inside_low=0.9409,
+        boards_inside_high=0.9801,
     )
     if report is None:
         report = Report((), (Checked("capacitor-voltage", 8, 0.37, "C1 at 63 %"),))

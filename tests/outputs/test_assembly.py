@@ -13,6 +13,7 @@ from modgen.catalogue.records import Body
 from modgen.chain import run
 from modgen.outputs.assembly import assembly_html, cautions
 from modgen.outputs.steps import step_table, steps
+from modgen.outputs.wording import prose
 
 SPECS = sorted((Path(__file__).parents[2] / "specs").glob("*.yaml"))
 HEIGHTS = {
@@ -155,7 +156,7 @@ def test_cautions_stand_before_the_first_step(tall):
     assert page.index('class="caution"') < page.index('class="step')
     for subject, words in cautions(tall()):
         assert f"<dt>{subject}</dt>" in page
-        assert words.replace("'", "&#39;") in page
+        assert prose(words).replace("'", "&#39;") in page
 
 
 def test_soldering_limit_of_the_controls_is_their_record(tall):
@@ -171,3 +172,44 @@ def test_sketches_are_beside_what_can_be_turned(tall):
 
 def test_not_cleared_notes_say_not_to_build(faulty):
     assert "Do not order or build from these notes: see the review page." in assembly_html(faulty).decode()
+
+
+def test_heights_keep_what_a_board_needs_of_them(tall):
+    job = tall()
+    high = [replace(p, record=replace(p.record, body=replace(p.record.body, height=13.5e-3))) for p in job.design.parts]
+    made = steps(replace(job, design=replace(job.design, parts=tuple(high))))
+    assert {step.facts.split(", ")[1].replace("\u00a0", " ") for step in made} == {"13.5 mm high"}
+
+
+def test_values_are_words_and_no_catalogue_keys(shipped):
+    keys = {part.record.key for part in shipped.design.parts}
+    values = {line.value for step in steps(shipped) for line in step.lines}
+    assert values.isdisjoint(keys)
+    assert {"2 x 5 header", "3.5 mm socket"} <= values
+
+
+def test_references_of_many_channels_stay_on_a_line(tall):
+    (step,) = [s for s in steps(tall(64)) if s.title == "resistors"]
+    column = [str(row[0]) for row in step_table(step).rows]
+    assert column == [
+        "R5 to R320 (every 5th)",
+        "R3 to R318 (every 5th)",
+        "R2 to R317 (every 5th)",
+        "R1 to R316 (every 5th)",
+    ]
+
+
+def test_supply_limit_is_raised_only_where_it_changes(job):
+    # 10 mA at most and 20 mA at the peak: limits of 20 mA and 30 mA
+    said = "Raise the supply's current limit to V+ 30\u00a0mA and V\u2212 30\u00a0mA for this"
+    assert said in assembly_html(job).decode()
+    still = tuple(replace(rail, current_peak=15e-3) for rail in job.analyses.rails)
+    assert "Raise the supply" not in assembly_html(replace(job, analyses=replace(job.analyses, rails=still))).decode()
+    one = (job.analyses.rails[0], still[1])
+    page = assembly_html(replace(job, analyses=replace(job.analyses, rails=one))).decode()
+    assert "Raise the supply's current limit to V+ 30\u00a0mA for this" in page
+
+
+def test_no_forced_page_breaks(tall):
+    page = assembly_html(tall()).decode()
+    assert "break-before: page" not in page

@@ -3,14 +3,19 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from pathlib import Path
 
 import pytest
 
+from modgen.analysis.model import Term
+from modgen.chain import run
 from modgen.outputs import benchtest
 from modgen.outputs.assembly import assembly_html
 from modgen.outputs.boardfacts import loads, records_of, reservoirs, supply_pins
 from modgen.outputs.bringup import before_power, current_limit, rails_table
 from modgen.outputs.faultfinding import fault_table
+
+SPECS = sorted((Path(__file__).parents[2] / "specs").glob("*.yaml"))
 
 
 def plain(text) -> str:
@@ -132,7 +137,7 @@ def test_offset_limit_is_the_worst_case_of_the_budget(job):
 def test_single_supply_outputs_stop_where_the_swing_begins(single):
     assert benchtest.output_bounds(single) == (0.0, 0.025)
     assert plain(benchtest.offset_words(single)).startswith(
-        "Every output stays between 0 V and 25 mV: the worst of its offset and of where its swing begins;"
+        "Every output stays between 0 V and 25 mV, the worst of its offset and of where its swing begins;"
     )
 
 
@@ -189,15 +194,95 @@ def test_step_that_does_not_fit_above_0v_starts_at_the_low_end(job):
     assert benchtest.wave_levels(replace(job, spec=replace(job.spec, glide=glide))) == (-5.0, 3.0)
 
 
-def test_scale_limits_are_the_worst_case_over_the_span(job):
-    table = benchtest.scale_table(job)
-    assert cells(table)[0] == ("1", "10 V", "9.967 V to 10.033 V")
-    assert plain(table.note) == "Predicted at most 0.33 %, budget 2 %."
-    pitch = replace(job, spec=replace(job.spec, signal=replace(job.spec.signal, pitch=True)))
-    assert (
-        plain(benchtest.scale_table(pitch).note)
-        == "Predicted at most 3.96 cents per octave, budget 24 cents per octave."
+def with_terms(job, *terms, worst):
+    """The job with these scale terms; ``worst`` is their sum."""
+    budget = replace(
+        job.analyses.accuracy,
+        terms=tuple(Term("scale", name, size, "", "", "") for name, size in terms),
+        scale_worst=worst,
     )
+    return replace(job, analyses=replace(job.analyses, accuracy=budget))
+
+
+def test_scale_expects_what_source_and_load_take(job):
+    # chain of two, 330 ohm into 100 kilohm; 1 kilohm into 1 megohm, and into two of them from the first input
+    job = with_terms(job, ("source into terminator", 0.002), ("common-mode rejection, input buffer", 3e-4),
+                     ("output resistor into load", 0.0033), worst=0.0056)  # fmt: skip
+    loaded = 1 - 330 / 100_330
+    first, second = (benchtest.scale_reading(job, channel) for channel in (1, 2))
+    assert first.expected == pytest.approx(10 * loaded * (1 - 1e3 / 501e3))
+    assert second.expected == pytest.approx(10 * loaded * (1 - 1e3 / 1001e3))
+    # with everything at its worst, and with a source of nothing, a resistor 1 % low and rejection the other way
+    assert (first.low, second.low) == pytest.approx((10 * 0.9944, 10 * 0.9944))
+    assert first.high == second.high == pytest.approx(10 * (1 - 326.7 / 100_326.7 + 3e-4))
+
+
+def test_a_missing_load_is_over_the_limit(job):
+    job = with_terms(job, ("common-mode rejection, output buffer", 3e-4), worst=0.0056)
+    reading = benchtest.scale_reading(job, 2)
+    unloaded = 10 * (1 - 1e3 / 1001e3)
+    assert unloaded > reading.high > reading.expected > reading.low
+
+
+def test_inside_the_loop_the_load_takes_nothing(job):
+    inside = replace(job, design=replace(job.design, values=replace(job.design.values, inside_loop=True)))
+    inside = with_terms(inside, ("common-mode rejection, input buffer", 6e-4), worst=0.0026)
+    reading = benchtest.scale_reading(inside, 2)
+    assert reading.expected == pytest.approx(10 * (1 - 1e3 / 1001e3))
+    assert reading.high == pytest.approx(10.006)
+    note = plain(benchtest.scale_table(inside).note)
+    assert note.endswith("The load counts for nothing here: the output resistor stands inside the feedback loop.")
+
+
+def test_grounded_inputs_load_the_source_alone(job):
+    ground = replace(job, spec=replace(job.spec, normalling="ground"))
+    assert benchtest.scale_reading(ground, 1).expected == benchtest.scale_reading(job, 2).expected
+
+
+def test_no_limit_is_nearer_than_a_meter_can_tell(job):
+    exact = replace(job.design.values, inside_loop=True)
+    exact = replace(job, design=replace(job.design, values=exact))
+    exact = replace(exact, spec=replace(exact.spec, signal=replace(exact.spec.signal, source=0.0)))
+    reading = benchtest.scale_reading(with_terms(exact, worst=0.0), 1)
+    assert (reading.low, reading.expected, reading.high) == pytest.approx((9.999, 10.0, 10.001))
+    accurate = replace(job.analyses.accuracy, offset_worst=0.2e-3)
+    accurate = replace(job, analyses=replace(job.analyses, accuracy=accurate))
+    assert benchtest.output_bounds(accurate) == (-1e-3, 1e-3)
+    assert plain(benchtest.offset_words(accurate)).startswith(
+        "Every output stays within ±1 mV of 0 V, which is as near as most meters can tell; "
+        "the offset is at most ±200 µV at 25 °C"
+    )
+
+
+def test_scale_limits_have_four_digits_rounded_outwards(job):
+    table = benchtest.scale_table(with_terms(job, worst=0.00561))
+    assert cells(table)[1] == ("2", "10 V", "9.957 V", "9.943 V", "9.968 V")
+    assert plain(table.note) == (
+        "Expected with a source of 1 kΩ, a load of 100 kΩ and nominal parts. Scale error at most 0.561 % (6.73 cents "
+        "per octave), budget 2 % (24 cents per octave). When a reading is over its limit, see first that the load "
+        "is there."
+    )
+    words = benchtest.reading_words(benchtest.ScaleReading(3.9, 3.89999, 4.0))
+    assert [plain(text) for text in words] == ["3.900 V", "3.899 V", "4.000 V"]
+    words = benchtest.reading_words(benchtest.ScaleReading(11.0, 10.901, 11.0))
+    assert [plain(text) for text in words] == ["11.00 V", "10.90 V", "11.00 V"]
+
+
+def test_scale_errors_are_in_cents_for_pitch_and_in_both_otherwise(job):
+    assert plain(benchtest.scale_words(job, 0.0033)) == "0.33 % (3.96 cents per octave)"
+    pitch = replace(job, spec=replace(job.spec, signal=replace(job.spec.signal, pitch=True)))
+    assert plain(benchtest.scale_words(pitch, 0.0033)) == "3.96 cents per octave"
+
+
+@pytest.mark.parametrize("path", SPECS, ids=lambda path: path.stem)
+def test_expected_readings_of_shipped_specs_lie_within_their_limits(path):
+    job = run(path)
+    terms = [term for term in job.analyses.accuracy.terms if term.kind == "scale"]
+    # both buffers have a term of either sign, and nothing else has
+    assert sum(term.name.startswith(benchtest.TWO_SIDED) for term in terms) == 2
+    for channel in range(1, job.spec.channels + 1):
+        reading = benchtest.scale_reading(job, channel)
+        assert reading.low < reading.expected < reading.high
 
 
 def test_faults_name_the_parts_of_this_board(job):

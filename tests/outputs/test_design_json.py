@@ -18,6 +18,7 @@ def test_keys_in_their_order(job):
         "checked",
         "spec",
         "channels",
+        "boards_inside",
         "choices",
         "parts",
         "rails",
@@ -33,6 +34,19 @@ def test_a_channel_has_its_times_in_seconds(job):
     assert channel["shortest"] == {"nominal": 4.84e-3, "low": 4.5e-3, "high": 5.2e-3}
     assert channel["middle"]["nominal"] == 0.334
     assert channel["longest"] == {"nominal": 2.2, "low": 1.67, "high": 2.77}
+
+
+def test_shares_of_channels_and_of_boards_are_apart(job):
+    data = load(job)
+    assert data["channels"][0]["inside"] == {"share": 0.98, "low": 0.97, "high": 0.99, "boards": 10000}
+    assert data["boards_inside"] == {"share": 0.9604, "low": 0.9409, "high": 0.9801}
+
+
+def test_rails_are_signed_and_named_by_magnitude(job):
+    positive, negative = load(job)["rails"]
+    assert positive["bus"] == {"nominal": 12.0, "least": 11.4, "greatest": 12.6}
+    assert negative["bus"] == {"nominal": -12.0, "least": -11.4, "greatest": -12.6}
+    assert negative["protected"] == {"nominal": -11.75, "least": -11.1, "greatest": -12.4}
 
 
 def test_parts_are_the_netlists_with_the_designs_reasons(job):

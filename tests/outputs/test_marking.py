@@ -85,7 +85,7 @@ def test_electrolytics(record):
 
 def test_type_numbers_and_controls(record):
     assert printed(record("tl072c")).text == "TL072CP, with the maker's letters and a date code beside it"
-    assert printed(record("1n5819")).text == "1n5819, and a band at the cathode"
+    assert printed(record("1n5819")).text == "its type number, and a band at the cathode"
     assert printed(record("p-1m-log")).text == "1M, log taper"
 
 

@@ -5,15 +5,29 @@ from __future__ import annotations
 import re
 from html.parser import HTMLParser
 from itertools import pairwise
+from pathlib import Path
 
 import pytest
 
+from modgen.chain import run
 from modgen.outputs.assembly import assembly_html
 from modgen.outputs.pages import Table, columns, environment
 from modgen.outputs.review import review_html
-from modgen.outputs.wording import chosen, natural, plural, quantity, short_ranges, signed, verdict
+from modgen.outputs.wording import (
+    chosen,
+    grouped,
+    natural,
+    number_words,
+    plural,
+    prose,
+    quantity,
+    short_ranges,
+    signed,
+    verdict,
+)
 
 PAGES = (assembly_html, review_html)
+SPECS = sorted((Path(__file__).parents[2] / "specs").glob("*.yaml"))
 VOID = {"meta", "br", "path", "rect", "circle"}
 
 
@@ -188,8 +202,8 @@ def test_table_refuses_a_row_of_another_length():
 
 def test_short_tables_stay_on_one_page_and_long_ones_do_not():
     row = (("a",),)
-    assert Table("t", columns("x"), row * 14).whole
-    assert not Table("t", columns("x"), row * 15).whole
+    assert Table("t", columns("x"), row * 3).whole
+    assert not Table("t", columns("x"), row * 4).whole
 
 
 def test_column_marks():
@@ -207,6 +221,47 @@ def test_quantities_have_a_true_minus_and_do_not_break():
 def test_references_in_short_ranges():
     assert short_ranges(["R7", "R2", "R1", "R3", "C10", "C9"]) == "C9, C10, R1–R3, R7"
     assert short_ranges([]) == ""
+
+
+def test_many_references_at_even_steps_are_together():
+    every = [f"R{n}" for n in range(2, 60, 6)]
+    assert short_ranges(every[:8]) == "R2, R8, R14, R20, R26, R32, R38, R44"
+    assert short_ranges(every) == "R2 to R56 (every 6th)"
+    assert short_ranges([*every, *(f"R{n}" for n in range(6, 60, 6)), "R61"]) == (
+        "R2 to R56 (every 6th), R6 to R54 (every 6th), R61"
+    )
+    assert short_ranges([*every, "C1", "C2", "C3", "U1"]) == "C1–C3, R2 to R56 (every 6th), U1"
+
+
+def test_sentences_are_set_as_quantities_are():
+    said = prose("costs 2.8% more: -5 V of ±12 V, 34 mm2, 9.5 ms, V- and BUS-; 1525554 combinations, 3 cents")
+    assert said == (
+        "costs 2.8\u00a0% more: \u22125\u00a0V of ±12\u00a0V, 34\u00a0mm², 9.5\u00a0ms, V\u2212 and BUS\u2212; "
+        "1\u00a0525\u00a0554 combinations, 3\u00a0cents"
+    )
+
+
+@pytest.mark.parametrize(
+    "text",
+    ["film-pet-5mm-63v-1u0", "R1-R4", "pins 3-8", "LM358-N", "4 Volumes", "61300511121", "2 x tl074-dip14", "CH3_IN"],
+)
+def test_names_are_left_alone(text):
+    assert prose(text) == text
+
+
+def test_counts_are_grouped_from_five_digits():
+    assert [grouped(n) for n in (999, 9999, 10000, 1860624)] == ["999", "9999", "10\u00a0000", "1\u00a0860\u00a0624"]
+    assert number_words(["10", "1", "2", "3"]) == "1 to 3, 10"
+
+
+@pytest.mark.parametrize("page", PAGES)
+@pytest.mark.parametrize("path", SPECS, ids=lambda path: path.stem)
+def test_no_value_of_a_shipped_spec_is_apart_from_its_unit(page, path):
+    text = re.sub(r"<(style|svg)\b.*?</\1>", "", page(run(path)).decode(), flags=re.DOTALL)
+    shown = re.sub(r"<[^>]*>", "\n", text)
+    assert re.findall(r"[0-9] (?:[mkµnp]?(?:V|A|s|Ω|F|W)|%|cents?|mm|°C)\b.*", shown) == []
+    assert re.findall(r"[0-9]%.*", shown) == []
+    assert re.findall(r"(?<!\S)-[0-9].*", shown) == []
 
 
 def test_words():

@@ -23,9 +23,13 @@ def job(path):
 
 
 def expand(text):
-    """``R1-R3, R7`` as single references."""
+    """``R1-R3, R7, R9 to R21 (every 6th)`` as single references."""
     out = []
     for piece in text.split(", "):
+        steps = re.fullmatch(r"([A-Z]+)([0-9]+) to [A-Z]+([0-9]+) \(every ([0-9]+)[a-z]{2}\)", piece)
+        if steps:
+            out += [f"{steps[1]}{n}" for n in range(int(steps[2]), int(steps[3]) + 1, int(steps[4]))]
+            continue
         first, _, last = piece.partition("-")
         letters = first.rstrip("0123456789")
         start = int(first[len(letters) :])

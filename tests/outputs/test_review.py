@@ -2,13 +2,17 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import replace
+from pathlib import Path
 
 from modgen.catalogue.records import Evidence
-from modgen.outputs.pages import Cell
+from modgen.chain import run
+from modgen.design.model import Choice
+from modgen.outputs.choicewords import choice_margin, choice_words
+from modgen.outputs.pages import Cell, environment
 from modgen.outputs.review import (
     bom_table,
-    choice_margin,
     evidence_table,
     review_html,
     rules_table,
@@ -18,6 +22,8 @@ from modgen.outputs.review import (
 from modgen.outputs.review_figures import accuracy_tables, glide_tables, headroom_table, margin_cell, rails_table
 from modgen.problems import Place
 from modgen.rules.contract import Checked, Report
+
+SPECS = sorted((Path(__file__).parents[2] / "specs").glob("*.yaml"))
 
 
 def plain(text) -> str:
@@ -34,7 +40,7 @@ def test_verdict_comes_first_with_its_counts_and_errors(faulty):
     main = page[page.index("<main>") :]
     assert main.index("Not cleared for ordering") < main.index("<nav")
     assert "1 error, no warnings, no notes and 1 waived finding; 2 rules looked at 9 instances." in main
-    assert "<li>C7: C7 is rated 10 V and can see 12.6 V</li>" in main
+    assert "<li>C7: C7 is rated 10\u00a0V and can see 12.6\u00a0V</li>" in main
 
 
 def test_sections_in_the_order_of_a_review(faulty):
@@ -52,10 +58,10 @@ def test_findings_say_what_why_and_what_to_do(faulty):
     finding = page[page.index('<section class="finding error">') : page.index('<h2 id="rules"')]
     for words in (
         "capacitor-voltage",
-        "C7 is rated 10 V",
+        "C7 is rated 10\u00a0V",
         "12.6\u00a0V, limit 10\u00a0V",
         "it will short",
-        "take 25 V",
+        "take 25\u00a0V",
     ):
         assert words in finding
     assert "idle-amplifier" not in finding  # it is waived, and stands there
@@ -80,9 +86,74 @@ def test_choices_show_reason_margin_and_what_lost(job):
     assert plain(choice_margin(job.design.choices[0])) == "longest glide: 10 % left"
     assert choice_margin(replace(job.design.choices[0], margin=None, binding="")) == ""
     page = review_html(job).decode()
+    # the choice of this module decides no role, so its own words head it
     assert "<h3>Glide capacitor: 1u film</h3>\n<p>Cheapest that keeps the range.</p>" in page
     assert "<dd>longest glide: 10\u00a0% left</dd>" in page
     assert "<dd><strong>2u2</strong>: dearer</dd>" in page
+
+
+def test_choices_are_headed_by_noun_value_and_references(job):
+    choice = Choice("isolating", "r-2k2", "the largest", "the shortest glide", 0.2)
+    words = choice_words(job, choice)
+    assert plain(words.heading) == "Isolating resistor: 2.2 kΩ, R3, R8"
+    assert (words.chosen, words.reason) == ("r-2k2", "The largest.")
+    page = review_html(replace(job, design=replace(job.design, choices=(choice,)))).decode()
+    assert '<h3>Isolating resistor: 2.2\u00a0kΩ, R3, R8</h3>\n<p class="part">r-2k2</p>\n<p>The largest.</p>' in page
+    headings = [
+        choice_words(job, Choice(s, "x", "y")).heading for s in ("input-series", "reverse-polarity", "amplifier")
+    ]
+    assert [plain(text) for text in headings] == [
+        "Input series resistor: 100 kΩ, R2, R7",
+        "Reverse-polarity diode: 1N5819, D1, D2",
+        "Amplifier: TL072C, U1, U2",
+    ]
+
+
+def test_others_that_fit_are_counted(job):
+    runners = (("A", "dearer"), ("B", "dearer"), ("C", "too low"))
+    found = {
+        reason: choice_words(job, Choice("amplifier", "x", reason, runners_up=runners)).more
+        for reason in ("the least (5 of 6 do)", "the least (3 of 4 do)", "the least", "the least (20005 of 20006 do)")
+    }
+    assert {reason: plain(more) for reason, more in found.items()} == {
+        "the least (5 of 6 do)": "and 2 more that fit, behind these",
+        "the least (3 of 4 do)": "",
+        "the least": "",
+        "the least (20005 of 20006 do)": "and 20 002 more that fit, behind these",
+    }
+
+
+def test_costs_name_the_currency(job):
+    words = choice_words(
+        job, Choice("x", "y", "z", runners_up=(("w", "costs 0.05 more a channel"), ("v", "costs 3% more")))
+    )
+    assert [plain(why) for _, why in words.lost] == ["costs 0.05 EUR more a channel", "costs 3 % more"]
+
+
+def test_scale_in_reasons_is_in_the_unit_of_the_spec(job):
+    reason = "loads it by 1.21 cents per octave, and costs 12 instead of 6 cents per octave"
+    assert plain(choice_words(job, Choice("x", "y", reason)).reason) == (
+        "Loads it by 0.101 % (1.21 cents per octave), and costs 1 % instead of 0.5 % "
+        "(12 instead of 6 cents per octave)."
+    )
+    pitch = replace(job, spec=replace(job.spec, signal=replace(job.spec.signal, pitch=True)))
+    assert (
+        plain(choice_words(pitch, Choice("x", "y", "by 1.21 cents per octave")).reason) == "By 1.21 cents per octave."
+    )
+
+
+def test_shipped_choices_all_have_nouns_and_references():
+    for path in SPECS:
+        job = run(path)
+        for choice in job.design.choices:
+            words = choice_words(job, choice)
+            assert choice.chosen not in words.heading
+            assert words.chosen == choice.chosen
+        (amplifier,) = [c for c in job.design.choices if c.subject == "amplifier"]
+        fit, tried = (int(n) for n in re.findall(r"([0-9]+) of ([0-9]+) do", amplifier.reason)[0])
+        named = len(amplifier.runners_up) - (tried - fit)
+        unnamed = fit - 1 - named
+        assert choice_words(job, amplifier).more.startswith(f"and {unnamed} more" if unnamed else "")
 
 
 def test_every_rule_with_instances_and_margin():
@@ -119,7 +190,14 @@ def test_glide_is_nominal_worst_case_and_share(job):
     assert cells(times)[0] == (
         "1", "C1, R3, R4", "4.84 ms", "4.5 ms to 5.2 ms", "334 ms", "250 ms to 420 ms", "2.2 s", "1.67 s to 2.77 s",
     )  # fmt: skip
-    assert cells(shares)[0] == ("1", "98 %", "97 % to 99 %", "10 000")
+    assert plain(shares.caption) == "How many such channels, and how many whole boards, cover the whole of 5 ms to 2 s"
+    assert cells(shares) == [
+        ("1, 2, each", "98 %", "97 % to 99 %", "10 000"),
+        ("all 2 of a board", "96 %", "94.09 % to 98.01 %", "-"),
+    ]
+    assert plain(shares.note).startswith(
+        "Of channels like these 98 % cover the range; of boards, on which every channel must, 96 %, "
+    )
 
 
 def test_accuracy_terms_and_sums_against_the_budget(job):
@@ -132,6 +210,12 @@ def test_accuracy_terms_and_sums_against_the_budget(job):
     assert cells(scale) == [
         ("output resistor into load", "0.33 %", "R/(R+load)", "divider", "a smaller resistor"),
     ]
+
+
+def test_cents_stand_beside_a_scale_in_per_cent(job):
+    worst = accuracy_tables(job)[0].rows[0][1]
+    assert isinstance(worst, Cell)
+    assert [plain(text) for text in worst.more] == ["3.96 cents per octave"]
 
 
 def test_scale_is_in_cents_where_pitch_matters(job):
@@ -159,6 +243,20 @@ def test_headroom_that_is_missing_stands_out(job):
     short = replace(job.analyses.headroom[0], can_high=4.5)
     table = headroom_table(replace(job, analyses=replace(job.analyses, headroom=(short,))))
     assert table.rows[0][4] == Cell("\u2212500\u00a0mV", tone="stop")
+
+
+def test_parts_list_shows_no_catalogue_key(job):
+    rows = {row[2]: row for row in cells(bom_table(job))}
+    assert rows["2 x 5 header"][-1] == rows["3.5 mm socket"][-1] == "any maker to this rating"
+    assert rows["TL072C"][-1] == "TL072CP"
+
+
+def test_links_begin_at_one_height():
+    loader = environment().loader
+    assert loader is not None
+    style = loader.get_source(environment(), "style.css")[0]
+    # a margin above the first item of a column would be dropped in all columns but the first
+    assert re.search(r"\.contents li \{ margin: 0;", style)
 
 
 def test_parts_list_counts_the_netlist(job):

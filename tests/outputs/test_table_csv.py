@@ -32,9 +32,9 @@ def test_a_whole_row(make):
         "Package": "axial-0207",
         "Mount": "through-hole",
         "Part": "c-1u-pp",
-        "Order code": "c-1u-pp",
-        "Alternates": "",
-        "Pack": "1",
+        "Order code": "",
+        "Alternates": "any maker to this rating",
+        "Pack (orders are not rounded to it)": "1",
         "Boards": "25",
         "Needed": "50",
         "Spares": "3",
@@ -42,10 +42,13 @@ def test_a_whole_row(make):
         "To order": "53",
         "Unit price": "0.7",
         "Line total": "37.10",
+        "Currency": "EUR",
         "Prices": "invented",
-        "Status": "cleared",
+        "Status": "Cleared for ordering",
     }
     assert found["r-330"]["Unit price"] == found["r-330"]["Line total"] == "no price"
+    assert found["r-330"]["Currency"] == ""
+    assert (found["tl072c"]["Order code"], found["tl072c"]["Alternates"]) == ("TL072CP", "TL072CN")
 
 
 def test_what_is_on_hand_is_not_ordered(make):
@@ -57,7 +60,7 @@ def test_what_is_on_hand_is_not_ordered(make):
 
 
 def test_every_row_says_when_it_is_not_cleared(faulty):
-    assert {row["Status"] for row in rows(faulty)} == {"not cleared for ordering"}
+    assert {row["Status"] for row in rows(faulty)} == {"Not cleared for ordering"}
 
 
 @pytest.mark.parametrize("sign", ["=", "+", "-", "@", "\t", "\r"])

@@ -6,6 +6,7 @@ import pytest
 from openpyxl import load_workbook
 
 from modgen.outputs.bom import bom_lines, cost
+from modgen.outputs.sheets import PAGE, lines_of, pages
 from modgen.outputs.workbook import COLUMNS, TOP, write_bom_xlsx
 
 SHEETS = ["Summary", "Parts list", "Catalogue facts"]
@@ -88,9 +89,9 @@ def test_prices_are_money(job):
 def test_a_module_with_errors_says_so_on_every_sheet(job, faulty):
     for sheet in opened(faulty):
         assert sheet["A2"].value == "Not cleared for ordering: 1 error stands."
-        assert sheet.oddFooter.center.text == "not cleared for ordering"
+        assert sheet.oddFooter.center.text == "Not cleared for ordering"
     for sheet in opened(job):
-        assert sheet["A2"].value == "No error stands in modgen's checks."
+        assert sheet["A2"].value == "Cleared for ordering."
 
 
 def test_errors_and_waivers_are_on_the_summary(faulty):
@@ -104,9 +105,88 @@ def test_missing_and_invented_prices_are_said(job):
     book = opened(job)
     found = texts(book["Summary"])
     assert "11 lines have invented prices: put real ones in the yellow cells of 'Catalogue facts'." in found
-    assert found[found.index("No price in the catalogue") + 3] == "r-330"
+    assert found[found.index("No price in the catalogue") + 3] == "330 Ω"
     prices = [book["Parts list"][f"R{row}"].value for row in range(5, 17)]
     assert prices.count("invented") == 11
+
+
+def test_order_codes_are_codes_and_values_are_words(job):
+    sheet = opened(job)["Parts list"]
+    rows = {sheet[f"D{row}"].value: row for row in range(TOP + 1, TOP + 13)}
+    code, instead = LETTER["Order code"], LETTER["Alternates"]
+    assert sheet[f"{code}{rows['TL072C']}"].value == "TL072CP"
+    for value in ("2 x 5 header", "3.5 mm socket", "2.2 kΩ"):
+        assert sheet[f"{code}{rows[value]}"].value in (None, ""), value
+        assert sheet[f"{instead}{rows[value]}"].value == "any maker to this rating"
+
+
+def test_packs_are_said_not_to_be_rounded(job):
+    assert opened(job)["Parts list"]["A3"].value.endswith(
+        " 'To order' counts single parts: it is not rounded up to packs here."
+    )
+
+
+def test_summary_says_what_is_not_on_the_list(job):
+    sheet = opened(job)["Summary"]
+    rows = [tuple(cell.value for cell in row[:3]) for row in sheet.iter_rows()]
+    start = rows.index(("Not on this list", "For one board", "Remark"))
+    assert [row[:2] for row in rows[start + 1 :]] == [
+        ("Bare board", 1),
+        ("Knobs", 2),
+        ("Sockets, DIP-8", 2),
+        ("Power cables", 1),
+    ]
+
+
+def test_sources_are_told_whole(job):
+    sheet = opened(job)["Catalogue facts"]
+    rows = [[cell.value for cell in row] for row in sheet.iter_rows()]
+    start = next(n for n, row in enumerate(rows, start=1) if row[:3] == ["Parts", "Evidence", "Figures"])
+    # all of this module's records share two sources, so two rows say everything
+    assert [(row[0], row[1], row[2], row[8]) for row in rows[start:]] == [
+        ("all parts", "invented", "prices", "a round number for an example"),
+        ("all parts", "published document", "tolerance", "a data sheet, table 1"),
+    ]
+    merged = {str(area) for area in sheet.merged_cells.ranges}
+    assert f"C{start + 1}:H{start + 1}" in merged
+    assert sheet[f"C{start + 1}"].alignment.wrap_text
+
+
+def test_references_of_many_channels_do_not_fill_the_page(make):
+    sheet = opened(make(64))["Parts list"]
+    texts = [sheet[f"B{row}"].value for row in range(TOP + 1, TOP + 13)]
+    assert "R5 to R320 (every 5th)" in texts
+    assert max(row.height or 15 for row in sheet.row_dimensions.values()) <= 60
+
+
+@pytest.mark.parametrize(
+    ("text", "width", "lines"),
+    [
+        ("", 5, 1),
+        ("Resistor, metal film, 0207", 26, 1),
+        ("0000 0000", 9, 1),
+        ("0000 0000", 8, 2),
+        ("0000-0000", 8, 2),
+        ("0" * 25, 10, 3),
+        ("0 " + "0" * 25, 10, 4),
+        ("MMMM", 4, 2),
+    ],
+)
+def test_rows_are_as_high_as_their_text(text, width, lines):
+    assert lines_of(text, width) == lines
+
+
+def test_no_page_with_a_few_rows():
+    wide, high = PAGE
+    assert pages(high * 0.99, wide) == 0
+    assert pages(high * 1.1, wide) == 1
+    assert pages(high * 1.5, wide) == 0
+    assert pages(high * 2.2, wide) == 2
+    # twice as wide is half as large: twice as much goes on a page
+    assert pages(high * 1.5, 2 * wide) == 0
+    assert pages(high * 2.2, 2 * wide) == 1
+    # rows that stand on every page leave less of it
+    assert pages(high * 1.7, wide, high * 0.4) == 2
 
 
 @pytest.mark.parametrize("start", ["=", "+", "-", "@", "\t", "#N/A", "=HYPERLINK("])

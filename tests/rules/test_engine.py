@@ -121,6 +121,27 @@ class TestChecked:
         (entry,) = judge(EMPTY, catalogue, rules=[rule]).checked
         assert (entry.rule, entry.instances, entry.worst_margin, entry.worst) == ("some", 3, 0.3, "C2 at 70 %")
 
+    def test_equal_margins_go_in_the_order_in_which_people_count(self, catalogue):
+        parts = ("R10", "R9", "R20")
+        rule = make("some", [Measurement((ref,), f"{ref}: half", margin=0.5) for ref in parts])
+        (entry,) = judge(EMPTY, catalogue, rules=[rule]).checked
+        assert entry.worst == "R9: half"
+
+    @pytest.mark.parametrize(
+        ("changes", "why"),
+        [
+            ("U1 8=VCC\nD1 1=VCC\nC2 1=VCC\nC4 1=VCC", "there is no net named V+"),
+            ("U1 8=0V\nD1 1=0V\nC2 1=0V\nC4 1=0V", "net 0V carries 0V and V+"),
+        ],
+    )
+    def test_without_rails_what_follows_currents_is_not_judged(self, catalogue, example, changes, why):
+        found = example(f"start from: lane\n{changes}")
+        report = judge(found.netlist, catalogue, found.spec)
+        assert not report.cleared
+        not_judged = {c.rule: c.not_judged for c in report.checked if not c.judged}
+        assert not_judged == {rule.name: why for rule in discover() if rule.needs_rails}
+        assert {f.rule for f in report.findings} <= {"rail-not-named", "rails-shorted", "part-shorted-on-itself"}
+
     def test_without_margins_the_first_fault_is_named(self, catalogue):
         rule = make("some", [Measurement((), "fine"), Measurement((), "not fine", fault=fault())])
         (entry,) = judge(EMPTY, catalogue, rules=[rule]).checked
@@ -132,7 +153,8 @@ class TestChecked:
         assert not_judged == {rule.name: "needs the spec, and none was given" for rule in discover() if rule.needs_spec}
         assert {"glide-range", "common-mode", "capacitor-voltage"} <= set(not_judged)
         assert "floating-input" not in not_judged
-        assert report.findings == ()
+        # without a spec nobody says what a neighbour sends
+        assert [f.rule for f in report.findings] == ["phase-reversal"]
 
     def test_every_rule_is_listed_in_order(self, catalogue, example):
         report = judge(example("start from: lane").netlist, catalogue)

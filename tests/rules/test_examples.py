@@ -62,6 +62,7 @@ def test_the_spec_can_be_changed(example):
     ).spec
     assert (spec.rails.positive, spec.rails.negative) == (15.0, EXAMPLE_SPEC.rails.negative)
     assert (spec.glide.cover, spec.channels, spec.signal.pitch) == ("worst-case", 3, True)
+    assert (spec.jacks.inputs, spec.jacks.outputs) == (3, 3)
     assert (spec.signal.low, spec.signal.high, spec.accuracy.scale) == (0.0, 5.0, 0.05)
     assert (spec.waive[0].rule, spec.waive[0].parts) == ("lone-net", ("R1", "R2"))
 
@@ -74,7 +75,7 @@ def test_library_messages_and_comments(example):
 @pytest.mark.parametrize(
     ("text", "message"),
     [
-        ("start from: nowhere", "no board 'nowhere' in line 'start from: nowhere'; there are lane, single"),
+        ("start from: nowhere", "no board 'nowhere' in line 'start from: nowhere'; there are lane, pair, single"),
         ("without R1", "no part R1 to take out in line 'without R1'"),
         ("R1 1=A", "R1 names no part in line 'R1 1=A'"),
         ("R1 metal-film-0207-1k0 A", "'A' is neither pin=net nor field=text in line 'R1 metal-film-0207-1k0 A'"),
@@ -109,7 +110,7 @@ def test_a_page_says_whether_it_needs_the_spec():
 def test_the_table_has_a_line_a_rule_under_its_subject():
     lines = rule_table().splitlines()
     assert lines[0] == "wiring"
-    assert "  floating-input          error    " in "\n".join(lines)
+    assert "  floating-input           error    " in "\n".join(lines)
     assert len([line for line in lines if line.startswith("  ")]) == len(discover())
 
 

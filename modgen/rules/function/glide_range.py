@@ -4,12 +4,24 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from modgen.analysis.board import Lane
-from modgen.analysis.glide import LaneValues, factor_of
+from modgen.analysis.board import Board, Lane
+from modgen.analysis.glide import LaneValues, boards_inside, factor_of
 from modgen.rules.contract import Context, Fault, Measurement, Rule
 from modgen.rules.support import above, left
 from modgen.spec.model import Glide
 from modgen.units import format_quantity
+
+#: Share of boards that should reach the whole range although only nominal values are asked for [-]. Our choice.
+LEAST_BOARDS = 0.90
+
+
+def percent(share: float) -> str:
+    """A share to a tenth of a per cent; what is not quite all is not called all, and what is not none not none."""
+    if 0 < share < 0.0005:
+        return "less than 0.1 %"
+    if 0.9995 <= share < 1:
+        return "more than 99.9 %"
+    return f"{100 * share:.1f} %".replace(".0 %", " %")
 
 
 class GlideRange(Rule):
@@ -19,7 +31,8 @@ class GlideRange(Rule):
         For each channel, by the spec's own measure: the glide at the fast end of the control is not
         longer than the shortest that is asked for, and at the slow end not shorter than the longest;
         with nominal values, or with every part at the wrong end of its tolerance when the spec says
-        ``cover: worst-case``.
+        ``cover: worst-case``. Where nominal values are asked for, the share of boards that reach the whole
+        range on every channel is worked out, and noted below 90 %.
     Matters:
         It is what the module is for. What a control leaves at its end of travel often sets the shortest
         glide, and its tolerance the longest.
@@ -45,6 +58,7 @@ class GlideRange(Rule):
         assert spec is not None
         lanes = {lane.channel: lane for lane in board.channels}
         factor = factor_of(spec.glide)
+        reached = set(lanes) == set(range(1, spec.channels + 1))
         for channel in sorted({*range(1, spec.channels + 1), *lanes}):
             lane = lanes.get(channel)
             if lane is None:
@@ -59,7 +73,33 @@ class GlideRange(Rule):
                     key="channels",
                 )
                 continue
-            yield from self._lane(spec.glide, lane, LaneValues.of(board, lane), factor)
+            for measurement in self._lane(spec.glide, lane, LaneValues.of(board, lane), factor):
+                reached = reached and measurement.fault is None
+                yield measurement
+        # with a range that is not reached, or a lane that is not there, the share says nothing new
+        if reached and spec.glide.cover == "nominal":
+            yield self._share(board, spec.glide)
+
+    def _share(self, board: Board, glide: Glide) -> Measurement:
+        share, _, _ = boards_inside(board, glide)
+        text = percent(share)
+        fault = None
+        if share < LEAST_BOARDS:
+            fault = Fault(
+                f"{text} of boards reach the whole range on every channel within tolerance",
+                "cover is nominal: the range is kept by parts of exactly their nominal value",
+                "ask for glide: {cover: worst-case}",
+                level="note",
+            )
+        return Measurement(
+            parts=(),
+            what=f"{text} of boards reach the whole range",
+            measured=round(100 * share, 9),
+            limit=100 * LEAST_BOARDS,
+            unit="%",
+            fault=fault,
+            key="glide.cover",
+        )
 
     def _lane(self, glide: Glide, lane: Lane, values: LaneValues, factor: float) -> Iterator[Measurement]:
         parts = (*lane.isolating, lane.control, *lane.capacitors)

@@ -29,6 +29,7 @@ class DuplicateReference(Rule):
 
     name = "duplicate-reference"
     subject = "ordering"
+    needs_rails = False
 
     def measure(self, context: Context) -> Iterator[Measurement]:
         """Every reference, once."""

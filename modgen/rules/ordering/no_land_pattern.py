@@ -27,6 +27,7 @@ class NoLandPattern(Rule):
 
     name = "no-land-pattern"
     subject = "ordering"
+    needs_rails = False
 
     def measure(self, context: Context) -> Iterator[Measurement]:
         """Every part."""

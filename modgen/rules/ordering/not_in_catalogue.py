@@ -28,6 +28,7 @@ class NotInCatalogue(Rule):
 
     name = "not-in-catalogue"
     subject = "ordering"
+    needs_rails = False
 
     def measure(self, context: Context) -> Iterator[Measurement]:
         """Every part."""

@@ -32,6 +32,7 @@ class StaleWaiver(Rule):
     subject = "ordering"
     level = "warning"
     needs_spec = True
+    needs_rails = False
     runs_last = True
 
     def measure(self, context: Context) -> Iterator[Measurement]:
@@ -39,7 +40,7 @@ class StaleWaiver(Rule):
         from modgen.rules.engine import nearest, waives
 
         assert context.spec is not None
-        for waiver in context.spec.waive:
+        for number, waiver in enumerate(context.spec.waive, 1):
             on = f" on {', '.join(waiver.parts)}" if waiver.parts else ""
             count = sum(waives(waiver, finding) for finding in context.findings)
             fault = None
@@ -59,9 +60,6 @@ class StaleWaiver(Rule):
             yield Measurement(
                 parts=waiver.parts,
                 what=f"waiver of {waiver.rule}{on}: {count} finding{'' if count == 1 else 's'}",
-                measured=float(count),
-                limit=1.0,
-                unit="findings",
                 fault=fault,
-                key="waive",
+                key=f"waive[{number}]",
             )

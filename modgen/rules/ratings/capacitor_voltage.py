@@ -56,7 +56,8 @@ class CapacitorVoltage(Rule):
                 )
                 continue
             record = board.record(ref)
-            limit = rated * (record.derating if isinstance(record, Capacitor) else DERATING)
+            share = record.derating if isinstance(record, Capacitor) else DERATING
+            limit = rated * share
             fault = None
             margin = left(worst, limit)
             if margin < 0:
@@ -72,7 +73,7 @@ class CapacitorVoltage(Rule):
                 )
             yield Measurement(
                 parts=(ref,),
-                what=f"{ref}: {volts} of {format_quantity(limit, 'voltage', 4)}",
+                what=f"{ref}: {volts} of {format_quantity(rated, 'voltage', 4)} x {format_quantity(share, 'ratio')}",
                 measured=worst,
                 limit=limit,
                 unit="V",

@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from modgen.analysis.board import Board
-from modgen.analysis.power import rail_powers
 from modgen.catalogue.records import Diode
 from modgen.rules.contract import Context, Fault, Measurement, Rule
 from modgen.rules.support import Rail, left, rails
@@ -20,8 +19,7 @@ class ReversePolarity(Rule):
         Between the header and what each rail feeds stands a diode; it conducts from the header on the
         positive rail and towards it on the negative one. With a spec: its reverse voltage against the
         header turned round while the reservoirs are still charged (both rails together at the high end
-        of their tolerance, twice the rail on a single supply), and its forward current against the
-        greatest steady current of the rail.
+        of their tolerance, twice the rail on a single supply).
     Matters:
         The key of a shrouded header is not dependable in the field. Turned round without a diode, every
         package and electrolytic of the board is destroyed at once.
@@ -31,8 +29,8 @@ class ReversePolarity(Rule):
     Passes:
         start from: lane
     Limits:
-        Knows series diodes only: protection by transistors or fuses shows as missing. Surge current is
-        not judged.
+        Knows series diodes only: protection by transistors or fuses shows as missing. Its current
+        is for diode-rating to judge.
     References:
         Reverse voltage of 1N5817 to 1N5819: Diodes Inc. DS23001. Series diode in each rail: common
         practice.
@@ -100,29 +98,4 @@ class ReversePolarity(Rule):
             nets=rail.nets,
             fault=fault,
             key="rails.positive" if rail.sign > 0 else "rails.negative",
-        )
-        powers = rail_powers(board, spec.rails, spec.signal)
-        current = next((p.current_max for p in powers if (p.bus_nominal > 0) == (rail.sign > 0)), None)
-        if current is None:
-            return
-        fault = None
-        margin = left(current, record.forward_current)
-        if margin < 0:
-            fault = Fault(
-                f"{ref} carries {format_quantity(record.forward_current, 'current')} and the {rail.name} draws "
-                f"{format_quantity(current, 'current')}",
-                "the diode overheats",
-                "fit a diode of a higher forward current",
-            )
-        yield Measurement(
-            parts=(ref,),
-            what=f"{ref} in the {rail.name}: {format_quantity(current, 'current')} of "
-            f"{format_quantity(record.forward_current, 'current')}",
-            measured=current,
-            limit=record.forward_current,
-            unit="A",
-            margin=margin,
-            nets=rail.nets,
-            fault=fault,
-            key="channels",
         )

@@ -1,31 +1,33 @@
-"""A control whose glide goes wrong when the wiper lifts."""
+"""A control that turns the wrong way, or fails the wrong way."""
 
 from __future__ import annotations
 
 from collections.abc import Iterator
 
+from modgen.catalogue.records import Control
 from modgen.rules.contract import Context, Fault, Measurement, Rule
 
 
 class ControlWiper(Rule):
-    """Every control is a rheostat with its wiper tied to one end.
+    """Every control is a rheostat with its wiper tied to the end that makes clockwise slower.
 
     Checks:
-        The wiper of each control is connected, is tied to exactly one end, and the track lies between
-        two nets.
+        The wiper of each control is connected and tied to pin 3, so that clockwise leaves more of the
+        track in the way, and the track lies between two nets. With a spec: its taper is the one that is
+        asked for.
     Matters:
         A wiper lifts for moments in every worn or dirty control. Tied to an end, the whole track stays
         in the way and the glide is slow for that moment; left alone, the path opens and the output
-        jumps or drifts.
+        jumps or drifts. Tied to the other end, clockwise is faster and the whole taper runs backwards.
     Fails:
         start from: lane
-        R4 3=
+        R4 2=CH1_CTL
     Passes:
         start from: lane
     Limits:
         Judges every control as a rheostat; one that is meant as a divider shows as a warning.
     References:
-        Common practice: wiper of a rheostat tied to its unused end (from memory).
+        Common practice: wiper of a rheostat tied to its unused end, pin 3 the clockwise end (from memory).
     """
 
     name = "control-wiper"
@@ -66,6 +68,21 @@ class ControlWiper(Rule):
                         f"connect pin {'3' if end == '1' else '1'} of {ref}",
                         level="error",
                     )
+                elif end == "1":
+                    fault = Fault(
+                        f"clockwise makes the glide of {ref} faster: its wiper (pin 2) is tied to pin 1 ({one})",
+                        "clockwise then takes track out of the way, and the taper runs backwards",
+                        f"put pin 2 of {ref} on {three}, the net of its pin 3, and off {one}",
+                        level="error",
+                    )
+            elif one is None and three is not None:
+                what = f"{ref}: pin 1 open"
+                fault = Fault(
+                    f"clockwise makes the glide of {ref} faster: its pins 2 and 3 are in the way and pin 1 is open",
+                    "clockwise then takes track out of the way, and a wiper that lifts opens the path",
+                    f"put pin 1 of {ref} on {three}, and pin 3 on {wiper}",
+                    level="error",
+                )
             else:
                 what = f"{ref}: wiper not tied to an end"
                 fault = Fault(
@@ -76,3 +93,16 @@ class ControlWiper(Rule):
             yield Measurement(
                 parts=(ref,), what=what, nets=tuple(n for n in dict.fromkeys((one, wiper, three)) if n), fault=fault
             )
+            record = board.record(ref)
+            if context.spec is not None and isinstance(record, Control):
+                asked = context.spec.glide.taper
+                fault = None
+                if record.taper != asked:
+                    fault = Fault(
+                        f"{ref} has a {record.taper} taper; the spec asks for {asked}",
+                        "the glide follows the rotation by another law than was asked for",
+                        f"fit a control with a {asked} taper, or write 'taper: {record.taper}' in the spec",
+                    )
+                yield Measurement(
+                    parts=(ref,), what=f"{ref}: {record.taper} taper, {asked} asked", fault=fault, key="glide.taper"
+                )

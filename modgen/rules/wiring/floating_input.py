@@ -6,6 +6,7 @@ from collections.abc import Iterator
 
 from modgen.analysis.board import Board
 from modgen.rules.contract import Context, Fault, Measurement, Rule
+from modgen.rules.loops import feedback_of
 from modgen.rules.support import Contact, closed_contacts, ground_nets, least_path, listed, rails
 from modgen.units import format_quantity
 
@@ -21,7 +22,8 @@ class FloatingInput(Rule):
         and a cable that is open at its far end brings nothing; a contact can only add paths, so with n
         sockets the 2^n states need not be tried: an input that is held with all contacts open is held
         in all of them, and one that is not held then floats at least in that state. An output does not
-        hold the non-inverting input of its own section.
+        hold the non-inverting input of its own section. A section whose inputs are exchanged is left to
+        positive-feedback: no resistor would mend it.
     Matters:
         Without a path for its bias current an input drifts to a rail, takes the output with it, and
         picks up hum; the module seems to work until a cable is pulled.
@@ -48,6 +50,11 @@ class FloatingInput(Rule):
         fixed = {*ground_nets(board), *(net for rail in rails(board) for net in rail.nets), *board.supply_nets}
         outputs = {s.output for s in board.sections if s.output}
         for section in board.sections:
+            if feedback_of(board, section).exchanged:
+                yield Measurement(
+                    parts=(section.package,), what=f"{section.name}: its inputs are exchanged (positive-feedback)"
+                )
+                continue
             inputs = (("inverting", section.inverting), ("non-inverting", section.noninverting))
             for (kind, net), pin in zip(inputs, section.pins[1:], strict=True):
                 name = f"{kind} input of {section.name}"

@@ -15,8 +15,8 @@ class LibraryErc(Rule):
     """The electrical rules check of the circuit library has nothing to say.
 
     Checks:
-        Every message that the library's own check left while the circuit was built; its errors are
-        errors here, its warnings warnings.
+        Every part and every net, for the messages that the library's own check left on it while the
+        circuit was built; its errors are errors here, its warnings warnings.
     Matters:
         It knows the pin kinds of the library parts and sees conflicts of drivers by other means than
         our own rules.
@@ -26,18 +26,26 @@ class LibraryErc(Rule):
     Passes:
         start from: lane
     Limits:
-        Has nothing to report on a netlist that was read from a file: the check runs only where a
-        circuit is built.
+        A netlist that was read from a file carries no messages: the check runs only where a circuit is
+        built.
     References:
         The circuit library's documentation, electrical rules checking.
     """
 
     name = "library-erc"
     subject = "wiring"
+    needs_rails = False
 
     def measure(self, context: Context) -> Iterator[Measurement]:
-        """Every message."""
+        """Every message, and every part and net without one."""
         known = {part.ref for part in context.board.netlist.parts}
+        said = " ".join(text for _, text in context.library_messages)
+        for ref in context.board.refs:
+            if not re.search(rf"\b{re.escape(ref)}\b", said):
+                yield Measurement(parts=(ref,), what=f"{ref}: no message")
+        for net in context.board.netlist.nets:
+            if not re.search(rf"(?<!\S){re.escape(net.name)}(?!\w)", said):
+                yield Measurement(parts=(), what=f"net {net.name}: no message", nets=(net.name,))
         for level, text in context.library_messages:
             parts = tuple(sorted(set(re.findall(r"\b[A-Z]+[0-9]+\b", text)) & known))
             yield Measurement(

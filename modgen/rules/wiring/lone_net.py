@@ -34,6 +34,7 @@ class LoneNet(Rule):
 
     name = "lone-net"
     subject = "wiring"
+    needs_rails = False
 
     def measure(self, context: Context) -> Iterator[Measurement]:
         """Every net."""

@@ -4,12 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from modgen.analysis.board import Section
+from modgen.analysis.board import Board, Section
 from modgen.rules.contract import Context, Fault, Measurement, Rule
 from modgen.rules.support import closed_contacts, groups, listed
 
 #: Outputs that may drive one node [outputs]. Source: what an output is.
 MOST_OUTPUTS = 1
+#: A resistor up to this joins its ends [ohm]. Source: wire links and zero-ohm resistors are below 50 mohm.
+LINK = 1.0
 
 
 class TiedOutputs(Rule):
@@ -17,7 +19,8 @@ class TiedOutputs(Rule):
 
     Checks:
         How many outputs drive each node, first by the wires alone, then with every switch contact
-        closed as it is when nothing is plugged in.
+        closed as it is when nothing is plugged in. An output whose resistor is inside its feedback loop
+        drives the net behind the resistor; links of up to 1 ohm are wires.
     Matters:
         Two outputs on one node push their short-circuit currents into each other as soon as they
         differ.
@@ -27,8 +30,8 @@ class TiedOutputs(Rule):
     Passes:
         start from: lane
     Limits:
-        Outputs that meet behind a resistor each are not seen, rightly. Header pins and rails are other
-        rules'.
+        Outputs that meet behind a resistor each, outside their loops, are not seen, rightly. Header pins
+        and rails are other rules'.
     References:
         Common practice: the driver-conflict check of every schematic editor.
     """
@@ -39,17 +42,30 @@ class TiedOutputs(Rule):
     def measure(self, context: Context) -> Iterator[Measurement]:
         """Every node with an output on it."""
         board = context.board
-        join = groups((a, b) for _, a, b in closed_contacts(board))
-        nodes: dict[str, list[Section]] = {}
+        links = [
+            (net, step.net)
+            for net in board.netlist.by_net
+            for step in board.between(net, "resistor")
+            if (ohms := board.value(step.ref)) is not None and ohms <= LINK
+        ]
+        wired = groups(links)
+        join = groups([*links, *((a, b) for _, a, b in closed_contacts(board))])
+        nodes: dict[str, list[tuple[Section, str]]] = {}
         for section in board.sections:
-            if section.output:
-                nodes.setdefault(join(section.output), []).append(section)
-        for node, sections in sorted(nodes.items()):
-            nets = tuple(sorted({s.output for s in sections if s.output}))
+            for net in driven(board, section):
+                nodes.setdefault(join(net), []).append((section, net))
+        for node, drivers in sorted(nodes.items()):
+            nets = tuple(sorted({net for _, net in drivers}))
+            sections = list(dict.fromkeys(section for section, _ in drivers))
             fault = None
             if len(sections) > MOST_OUTPUTS:
-                if len(nets) == 1:
-                    where, fix = f"wired together on net {nets[0]}", "give each output a net of its own"
+                fix = "give each output a net of its own"
+                inside = [s.name for s, net in drivers if net != s.output]
+                if len({wired(net) for net in nets}) == 1:
+                    where = f"wired together on net {nets[0]}" if len(nets) == 1 else f"linked (nets {listed(nets)})"
+                    where += f", which {listed(inside)} hold{'s' if len(inside) == 1 else ''} by feedback" * bool(
+                        inside
+                    )
                 else:
                     where = f"joined by closed socket contacts (nets {listed(nets)})"
                     fix = "take the switch contact off the output"
@@ -67,3 +83,18 @@ class TiedOutputs(Rule):
                 nets=nets,
                 fault=fault,
             )
+
+
+def driven(board: Board, section: Section) -> tuple[str, ...]:
+    """The nets that an output holds at a voltage: its own, and one behind a resistor where its feedback is taken."""
+    if section.output is None:
+        return ()
+    nets = [section.output]
+    tips = {jack.tip for jack in board.jacks if jack.tip}
+    if section.inverting is not None and not section.follower:
+        for step in board.between(section.output, "resistor"):
+            # where feedback is taken straight from a summing node, no socket is on that
+            taken = bool(board.ties(step.net, section.inverting, "resistor")) and step.net not in board.supply_nets
+            if taken or (step.net == section.inverting and step.net in tips):
+                nets.append(step.net)
+    return tuple(dict.fromkeys(nets))

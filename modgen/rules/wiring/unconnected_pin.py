@@ -5,7 +5,19 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from modgen.rules.contract import Context, Fault, Measurement, Rule
-from modgen.rules.support import may_stay_open
+from modgen.rules.support import HEADER_GROUND, HEADER_NEGATIVE, HEADER_POSITIVE, may_stay_open
+
+#: what each pin of the power header is for, and the net it belongs on
+SUPPLY = {
+    **dict.fromkeys(HEADER_NEGATIVE, "the negative supply"),
+    **dict.fromkeys(HEADER_GROUND, "0 V"),
+    **dict.fromkeys(HEADER_POSITIVE, "the positive supply"),
+}
+NET = {
+    **dict.fromkeys(HEADER_NEGATIVE, "BUS-"),
+    **dict.fromkeys(HEADER_GROUND, "0V"),
+    **dict.fromkeys(HEADER_POSITIVE, "BUS+"),
+}
 
 
 class UnconnectedPin(Rule):
@@ -30,6 +42,7 @@ class UnconnectedPin(Rule):
 
     name = "unconnected-pin"
     subject = "wiring"
+    needs_rails = False
 
     def measure(self, context: Context) -> Iterator[Measurement]:
         """Every pin of every part."""
@@ -43,13 +56,19 @@ class UnconnectedPin(Rule):
                 excuse = may_stay_open(board, ref, pin) if len(pins) < 2 else ""
                 fault = None
                 label = names.get(pin, "")
+                if board.kind(ref) == "header":
+                    label = SUPPLY.get(pin, label)
                 label = f"pin {pin} ({label})" if label and label != pin else f"pin {pin}"
                 if len(pins) < 2 and not excuse:
                     alone = f"is alone on net {net}" if net else "is on no net"
                     fault = Fault(
                         f"{label} of {ref} {alone}",
-                        "a part with an open pin is not in the circuit",
-                        f"connect {ref} pin {pin}, or take {ref} out",
+                        "a part with an open pin is not in the circuit"
+                        if board.kind(ref) != "header"
+                        else f"the ribbon brings {SUPPLY.get(pin, 'a supply')} there, and nothing takes it",
+                        f"connect {ref} pin {pin}, or take {ref} out"
+                        if board.kind(ref) != "header"
+                        else f"connect {ref} pin {pin} to {NET.get(pin, 'its supply')}",
                     )
                 yield Measurement(
                     parts=(ref,),

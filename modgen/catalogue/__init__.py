@@ -14,6 +14,7 @@ from modgen.catalogue.records import (
     PinDef,
     PriceBreak,
     Resistor,
+    Switch,
 )
 from modgen.catalogue.shelf import Catalogue, load_catalogue
 from modgen.catalogue.tables import read_prices, read_stock
@@ -32,6 +33,7 @@ __all__ = [
     "PinDef",
     "PriceBreak",
     "Resistor",
+    "Switch",
     "describe",
     "load_catalogue",
     "read_prices",

@@ -143,6 +143,11 @@ FIGURES: Mapping[str, Mapping[str, Figure]] = MappingProxyType(
             "current": Figure("current"),
             "panel_hole": Figure("length"),
         },
+        "switch": {
+            "voltage": Figure("voltage"),
+            "current": Figure("current"),
+            "panel_hole": Figure("length"),
+        },
         "header": {
             "current": Figure("current"),
             "voltage": Figure("voltage"),

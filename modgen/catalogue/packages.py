@@ -5,6 +5,7 @@ Land patterns of chips, outlines, axial, radial and dual-in-line parts follow th
 dimensions in hundredths of a millimetre:
 
 - control: ``POT`` + pitch + ``W`` lead + ``L`` length + ``D`` depth + ``Q`` pins: ``POT250W100L950D1100Q3``
+- toggle switch: ``SW`` and the same figures as a jack
 - jack: ``JACK`` + pitch + ``W`` lead + ``L`` length + ``D`` depth + ``Q`` pins: ``JACK310W120L900D1050Q3``
 - header: ``HDRS`` (shrouded) + pins + ``W`` lead + ``P`` pitch + ``_2X5`` rows and columns + ``L`` length
   + ``D`` depth + ``H`` height: ``HDRS10W64P254_2X5L2030D890H910``
@@ -99,6 +100,7 @@ PACKAGES: Mapping[str, Package] = MappingProxyType(
         "smd-can": Package(("capacitor",), (), lambda b, _: land_pattern.aluminium(b.length, b.height), "surface"),
         "control": Package(("control",), ("pitch", "lead"), _panel("POT"), "panel", pins=3),
         "jack": Package(("jack",), ("pitch", "lead"), _panel("JACK"), "panel", pins=3),
+        "toggle": Package(("switch",), ("pitch", "lead"), _panel("SW"), "panel", pins=3),
         "header": Package(("header",), ("pitch", "lead"), _header, "through-hole", pins=10),
     }
 )
@@ -119,6 +121,11 @@ _PINS: Mapping[str, tuple[PinDef, ...]] = MappingProxyType(
             PinDef("T", "tip", "passive"),
             PinDef("TN", "tip switch", "passive"),
             PinDef("S", "sleeve", "passive"),
+        ),
+        "switch": (
+            PinDef("1", "1", "passive"),
+            PinDef("2", "common", "passive"),
+            PinDef("3", "3", "passive"),
         ),
         "header": tuple(PinDef(str(n), str(n), "passive") for n in range(1, 11)),
     }

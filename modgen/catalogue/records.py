@@ -66,7 +66,7 @@ class Part:
 
     key: str
     family: str
-    kind: str  # resistor, capacitor, diode, amplifier, control, jack, header
+    kind: str  # resistor, capacitor, diode, amplifier, control, jack, switch, header
     description: str
     mount: str  # through-hole, surface, or panel (on any board)
     body: Body
@@ -229,6 +229,15 @@ class Control(Part):
 @dataclass(frozen=True, kw_only=True)
 class Jack(Part):
     """A 3.5 mm socket with tip switch: pins T, TN, S."""
+
+    voltage: float
+    current: float
+    panel_hole: float
+
+
+@dataclass(frozen=True, kw_only=True)
+class Switch(Part):
+    """A panel toggle switch, one pole, two positions: pin 2 is common."""
 
     voltage: float
     current: float

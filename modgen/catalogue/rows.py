@@ -23,6 +23,7 @@ from modgen.catalogue.records import (
     Jack,
     Part,
     Resistor,
+    Switch,
 )
 from modgen.documents import Fields, Node, shown, unknown
 from modgen.formulas.series import SERIES, series_values
@@ -37,6 +38,7 @@ RECORDS: dict[str, Callable[..., Part]] = {
     "diode": Diode,
     "amplifier": Amplifier,
     "jack": Jack,
+    "switch": Switch,
     "header": Header,
 }
 _SECTION_WORDS = {2: "dual", 4: "quad"}
@@ -294,7 +296,7 @@ class Row:
         layer = self.layer
         names = [n for n in FIGURES[self.kind] if n in layer.figures or n == VALUE_OF.get(self.kind)]
         # other parts' pin numbers are a convention of the netlist, not a figure of the part
-        names += ["body", "pins"] if self.kind in ("amplifier", "header", "jack") else ["body"]
+        names += ["body", "pins"] if self.kind in ("amplifier", "header", "jack", "switch") else ["body"]
         names += ["prices"] if layer.prices else []
         names += ["order_code"] if layer.text.get("order_code") else []
         without = [name for name in names if not layer.source_of(name)]

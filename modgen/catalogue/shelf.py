@@ -30,6 +30,7 @@ SHIPPED = (
     "headers.yaml",
     "jacks.yaml",
     "resistors.yaml",
+    "switches.yaml",
 )
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TypeVar
 
 from modgen.catalogue import Catalogue
-from modgen.catalogue.records import Capacitor, Header, Jack
+from modgen.catalogue.records import Capacitor, Header, Jack, Switch
 from modgen.design import practice
 from modgen.design.choose import Outcome, choose
 from modgen.design.model import Design, Values
@@ -17,7 +17,7 @@ from modgen.spec.model import Spec
 
 __all__ = ["Design", "make_design"]
 
-_T = TypeVar("_T", Jack, Header)
+_T = TypeVar("_T", Jack, Header, Switch)
 
 
 def make_design(spec: Spec, catalogue: Catalogue) -> Design:
@@ -79,6 +79,8 @@ def _values(spec: Spec, catalogue: Catalogue, outcome: Outcome) -> Values:
                 for name in missing
             ]
         )
+    switched = network.capacitor.switched
+    beside = network.capacitor.parts[1] if len(network.capacitor.parts) == 2 else None
     return Values(
         amplifier=stage.type,
         packages=stage.packages,
@@ -96,14 +98,16 @@ def _values(spec: Spec, catalogue: Catalogue, outcome: Outcome) -> Values:
         reservoir=reservoir,
         decoupling=decoupling,
         idle_tie=stage.idle_tie,
-        glide_parallel=None
-        if network.capacitor.back_to_back or len(network.capacitor.parts) == 1
-        else network.capacitor.parts[1],
+        glide_parallel=beside if not network.capacitor.back_to_back and not switched else None,
+        range_capacitor=beside if switched else None,
+        range_switch=_cheapest(spec, catalogue, Switch) if switched else None,
+        # what limits the current into an input limits it into the waiting capacitor as well
+        range_keeper=stage.input_series if switched else None,
     )
 
 
 def _cheapest(spec: Spec, catalogue: Catalogue, kind: type[_T]) -> _T:
-    """The cheapest socket or header; these are through-hole parts whatever the rest is."""
+    """The cheapest socket, header or switch; these are through-hole parts whatever the rest is."""
     fit = catalogue.of(kind)
     if not fit:
         raise InputError(

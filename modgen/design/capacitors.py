@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
-from itertools import combinations_with_replacement
+from itertools import combinations_with_replacement, product
 
 from modgen.catalogue import Catalogue
 from modgen.catalogue.records import Capacitor
@@ -19,6 +19,8 @@ class Arrangement:
 
     parts: tuple[Capacitor, ...]
     back_to_back: bool = False
+    #: the second part is switched in beside the first for the slow range
+    switched: bool = False
 
     @property
     def key(self) -> tuple[str, ...]:
@@ -36,6 +38,11 @@ class Arrangement:
         """Of the whole, when every part is off the same way [-]."""
         total = sum(part.capacitance for part in self.parts)
         return sum(part.capacitance * part.tolerance for part in self.parts) / total
+
+    @property
+    def fast(self) -> Arrangement:
+        """What is there in the fast range: the first part of a switched pair, else the whole."""
+        return Arrangement(self.parts[:1]) if self.switched else self
 
     @property
     def leaky(self) -> bool:
@@ -97,3 +104,11 @@ def pairs(singles: Sequence[Arrangement]) -> Iterator[Arrangement]:
     parts = [a.parts[0] for a in singles if not a.leaky]
     for one, two in combinations_with_replacement(parts, 2):
         yield Arrangement((one, two))
+
+
+def switched(singles: Sequence[Arrangement]) -> Iterator[Arrangement]:
+    """An insulating capacitor for the fast range and a larger one that the switch adds for the slow range."""
+    parts = [a.parts[0] for a in singles if not a.leaky]
+    for fast, slow in product(parts, parts):
+        if slow.capacitance > fast.capacitance:
+            yield Arrangement((fast, slow), switched=True)

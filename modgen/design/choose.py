@@ -8,15 +8,16 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import islice
 
 from modgen.catalogue import Catalogue
 from modgen.catalogue.records import Amplifier
 from modgen.design import practice, refusals
-from modgen.design.capacitors import Arrangement, arrangements, pairs
+from modgen.design.capacitors import Arrangement, arrangements, pairs, switched
 from modgen.design.network import Grid, Network, Reach, Room, controls, in_steps, isolators
 from modgen.design.stage import Stage, stages_of
+from modgen.problems import InputError
 from modgen.spec.model import Spec
 
 #: pairs of capacitors looked at together
@@ -71,45 +72,60 @@ def choose(spec: Spec, catalogue: Catalogue) -> Outcome:
             [(name, why) for name, (_, why) in stages.items()],
             lambda other: any(stages_of(other, catalogue, forms)[0] for forms in types.values()),
         )
-    singles = Grid(spec, caps, pots, resistors)
-    best = _best_of_each(spec, singles, stages)
-    reach = singles.reach(_roomiest(spec, able)) if not best else Reach()
-    source = singles
-    looked = len(caps)
-    if not best or min(candidate.key for candidate in best.values())[:2] > (False, False):
-        # a second part is taken only when one alone leaks, or bends the amplifier's bias, or does not reach
-        for chunk in _chunks(pairs(caps)):
-            grid = Grid(spec, chunk, pots, resistors)
-            looked += len(chunk)
-            for name, candidate in _best_of_each(spec, grid, stages).items():
-                if name not in best or candidate.key < best[name].key:
-                    best[name] = candidate
-                    source = grid
-            if not best:
-                reach = reach.wider(grid.reach(_roomiest(spec, able)))
+    best: dict[str, Candidate] = {}
+    source: dict[str, Grid] = {}
+    reach = Reach()
+    looked = 0
+    for chunk in _portions(spec, caps, best):
+        grid = Grid(spec, chunk, pots, resistors)
+        looked += len(chunk)
+        for name, candidate in _best_of_each(spec, grid, stages).items():
+            if name not in best or candidate.key < best[name].key:
+                best[name], source[name] = candidate, grid
+        if not best:
+            reach = reach.wider(grid.reach(_roomiest(spec, able)))
     refused = [
-        (name, why or refusals.network_fault(singles, _roomiest(spec, found)))
+        (name, why or refusals.network_fault(grid, _roomiest(spec, found)))
         for name, (found, why) in stages.items()
         if name not in best
     ]
     if not best:
-        raise refusals.no_network(spec, reach, _roomiest(spec, able), refused)
+        raise refusals.no_network(spec, reach, _roomiest(spec, able), refused, _with_switch(spec, catalogue))
     first, *others = sorted(best.values(), key=lambda candidate: candidate.key)
-    grid = singles if len(first.network.capacitor.parts) == 1 else source
     return Outcome(
         best=first,
         others=tuple(others),
-        networks=tuple(grid.ranked(_room(spec, first.stage))),
+        networks=tuple(source[first.stage.type].ranked(_room(spec, first.stage))),
         refused=tuple(refused),
         dielectrics=tuple(sorted(dielectrics.items())),
         combinations=looked * len(pots) * len(resistors) * len(types),
     )
 
 
-def _chunks(every: Iterator[Arrangement]) -> Iterator[list[Arrangement]]:
-    """Pairs in portions, so that memory does not grow with their number."""
+def _portions(spec: Spec, caps: list[Arrangement], best: dict[str, Candidate]) -> Iterator[list[Arrangement]]:
+    """Arrangements in portions, so that memory does not grow with their number; ``best`` is what was found so far.
+
+    A second part is looked at only where one alone leaks, bends the amplifier's bias or does not reach: in the
+    order of preference one part comes before two.
+    """
+    if spec.glide.ranges == 1:
+        yield caps
+        if best and min(candidate.key for candidate in best.values())[:2] == (False, False):
+            return
+    every = switched(caps) if spec.glide.ranges > 1 else pairs(caps)
     while chunk := list(islice(every, CHUNK)):
         yield chunk
+
+
+def _with_switch(spec: Spec, catalogue: Catalogue) -> bool:
+    """Whether a range switch would do what one range cannot."""
+    if spec.glide.ranges > 1:
+        return False
+    try:
+        choose(replace(spec, glide=replace(spec.glide, ranges=2)), catalogue)
+    except InputError:
+        return False
+    return True
 
 
 def _best_of_each(spec: Spec, grid: Grid, stages: dict[str, tuple[list[Stage], str]]) -> dict[str, Candidate]:

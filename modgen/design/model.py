@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 
-from modgen.catalogue.records import Amplifier, Capacitor, Control, Diode, Resistor
+from modgen.catalogue.records import Amplifier, Capacitor, Control, Diode, Resistor, Switch
 from modgen.catalogue.records import Part as Record
 
 
@@ -61,6 +61,11 @@ class Values:
     decoupling: Capacitor
     idle_tie: Resistor | None = None
     glide_parallel: Capacitor | None = None  # a second glide capacitor beside the first
+    #: with a range switch: what it adds for the slow range, the switch, and the resistor that keeps the added
+    #: capacitor at the output's voltage while it waits
+    range_capacitor: Capacitor | None = None
+    range_switch: Switch | None = None
+    range_keeper: Resistor | None = None
 
 
 @dataclass(frozen=True)

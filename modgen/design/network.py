@@ -129,6 +129,8 @@ class Grid:
 
         c = factor * axis([a.capacitance for a in self.caps], 0)
         c_tol = axis([a.tolerance for a in self.caps], 0)
+        fast = factor * axis([a.fast.capacitance for a in self.caps], 0)
+        fast_tol = axis([a.fast.tolerance for a in self.caps], 0)
         track = axis([p.resistance for p in self.pots], 1)
         track_tol = axis([p.tolerance for p in self.pots], 1)
         r, r_tol = (
@@ -139,17 +141,25 @@ class Grid:
         self.resistance = r * (1 + r_tol) + track * (1 + track_tol)
         if spec.glide.cover == "worst-case":
             end = axis([p.end_high for p in self.pots], 1)
-            self.shortest = c * (1 + c_tol) * (r * (1 + r_tol) + end)
+            self.shortest = fast * (1 + fast_tol) * (r * (1 + r_tol) + end)
             self.longest = c * (1 - c_tol) * (r * (1 - r_tol) + track * (1 - track_tol))
+            fast_longest = fast * (1 - fast_tol) * (r * (1 - r_tol) + track * (1 - track_tol))
+            slow_shortest = c * (1 + c_tol) * (r * (1 + r_tol) + end)
         else:
             end = axis([p.end for p in self.pots], 1)
-            self.shortest, self.longest = c * (r + end), c * (r + track)
+            self.shortest, self.longest = fast * (r + end), c * (r + track)
+            fast_longest, slow_shortest = fast * (r + track), c * (r + end)
 
         signal = max(abs(spec.signal.low), abs(spec.signal.high))
         self._insulation = axis([a.insulation(signal) for a in self.caps], 0)
         self._leakage = axis([a.leakage(signal) for a in self.caps], 0)
         # a hair of room, so that a range met exactly is not lost to rounding
-        inside = (self.shortest <= spec.glide.shortest * (1 + 1e-9)) & (self.longest >= spec.glide.longest * (1 - 1e-9))
+        inside = (
+            (self.shortest <= spec.glide.shortest * (1 + 1e-9))
+            & (self.longest >= spec.glide.longest * (1 - 1e-9))
+            # nothing may be missing between the two ranges of a switch
+            & (fast_longest >= slow_shortest)
+        )
         self.index = np.argwhere(inside)
         i, j, k = self.index.T
         channels, boards = spec.channels, spec.order.boards

@@ -92,6 +92,14 @@ def place(spec: Spec, values: Values, jack: Jack, header: Header, reasons: dict[
                 if capacitor is not None:
                     add("C", capacitor, "glide-capacitor", {"1": glide, "2": GROUND}, channel)
         drive = net + "DRIVE"
+        if values.range_switch is not None:
+            # waiting, the added capacitor is held at the output's voltage: switching in changes nothing but the time
+            assert values.range_capacitor is not None
+            assert values.range_keeper is not None
+            pins = {"1": glide, "2": net + "RANGE", "3": net + "KEEP"}
+            add("S", values.range_switch, "range-switch", pins, channel)
+            add("C", values.range_capacitor, "range-capacitor", {"1": net + "RANGE", "2": GROUND}, channel)
+            add("R", values.range_keeper, "range-keeper", {"1": drive, "2": net + "KEEP"}, channel)
         outs = [net + "OUT" + (str(n) if n > 1 else "") for n in range(1, spec.outputs_of(channel) + 1)]
         for out in outs:
             add("R", values.output_series, "output-series", {"1": drive, "2": out}, channel)

@@ -84,7 +84,8 @@ def _network(spec: Spec, outcome: Outcome) -> list[Choice]:
             lost.append((pair, _network_lost(spec, best, other)))
     lost += list(outcome.dielectrics)
     first, *beside = best.capacitor.key
-    arrangement = " (two, back to back)" if best.capacitor.back_to_back else "".join(f" beside {key}" for key in beside)
+    how = " and, switched in, " if best.capacitor.switched else " beside "
+    arrangement = " (two, back to back)" if best.capacitor.back_to_back else "".join(how + key for key in beside)
     reach = f"{text(best.shortest, 'time')} to {text(best.longest, 'time')} {worst} ({glide.measure})"
     asked = f"{text(glide.shortest, 'time')} to {text(glide.longest, 'time')}"
     low, high = 1 - best.shortest / glide.shortest, 1 - glide.longest / best.longest

@@ -119,8 +119,12 @@ def _down(value: float) -> float:
     return math.trunc(value * 10) / 10
 
 
-def no_network(spec: Spec, reach: Reach, room: Room, refused: Sequence[tuple[str, str]]) -> InputError:
-    """Some type would do, but no network reaches the range or keeps the budgets with it."""
+def no_network(spec: Spec, reach: Reach, room: Room, refused: Sequence[tuple[str, str]], switch: bool) -> InputError:
+    """Some type would do, but no network reaches the range or keeps the budgets with it.
+
+    ``switch`` tells whether a range switch would; it is offered, never added unasked.
+    """
+    offer = "; or have a panel switch for two ranges, glide: {ranges: 2}" if switch else ""
     glide = spec.glide
     ranges = []
     if reach.longest > glide.shortest:
@@ -136,7 +140,7 @@ def no_network(spec: Spec, reach: Reach, room: Room, refused: Sequence[tuple[str
             key,
             "the accuracy budget cannot be kept over the glide range",
             _list("every type is refused", refused) + (f"\n         {near}" if near else ""),
-            "allow more error, ask for a range that can be had, or another amplifier or capacitor",
+            "allow more error, ask for a range that can be had, or another amplifier or capacitor" + offer,
         )
     if not reach.longest and reach.shortest == math.inf:
         needed = format_quantity(room.isolating, "resistance")
@@ -161,7 +165,7 @@ def no_network(spec: Spec, reach: Reach, room: Room, refused: Sequence[tuple[str
         "glide.longest",
         f"a glide of {asked} ({glide.measure}) cannot be had {cover} from the catalogue",
         f"{blocks}; {near}" if near else blocks,
-        "change glide.shortest or glide.longest to a range that can be had, or add parts with build.catalogue",
+        "change glide.shortest or glide.longest to a range that can be had, or add parts with build.catalogue" + offer,
     )
 
 

@@ -94,6 +94,7 @@ class Glide:
 
     measure: ``rise`` (10 % to 90 %), ``time-constant`` or ``settle`` (after ``step`` [V], to within
     ``within`` [V]). cover: ``nominal`` or ``worst-case``. taper: ``linear``, ``log``, ``reverse-log``.
+    ranges: 2 has a panel switch that puts a second capacitor beside the first.
     """
 
     shortest: float = field(
@@ -169,6 +170,16 @@ class Glide:
             "how the glide time follows the rotation of the control",
             default="log",
             choices=("linear", "log", "reverse-log"),
+        ),
+    )
+    ranges: int = field(
+        default=1,
+        metadata=key(
+            "whole",
+            "ranges that a panel switch sets: with 2, a second capacitor is switched in for the slow range",
+            default="1",
+            least=1,
+            most=2,
         ),
     )
 

@@ -26,8 +26,10 @@ def jobs() -> dict[str, Job]:
 
 
 def test_every_spec_is_cleared(jobs: dict[str, Job]) -> None:
-    assert {name: job.report.findings for name, job in jobs.items()} == dict.fromkeys(jobs, ())
-    for job in jobs.values():
+    """The one thing said: with nominal cover, how few boards reach the whole range over tolerance."""
+    for name, job in jobs.items():
+        said = [(finding.rule, finding.level) for finding in job.report.findings]
+        assert said == ([("glide-range", "note")] if job.spec.glide.cover == "nominal" else []), name
         assert job.report.cleared
         assert all(checked.judged for checked in job.report.checked)
 

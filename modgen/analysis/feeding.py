@@ -58,6 +58,26 @@ def nets_before(board: Board, net: str) -> tuple[str, ...]:
     return tuple(nets)
 
 
+def heads(board: Board, net: str) -> tuple[str, ...]:
+    """Where a source that reaches a socket net can be plugged to reach most: the starts of its chain.
+
+    Parameters
+    ----------
+    board
+        The netlist seen as electronics.
+    net
+        The tip net of a socket.
+
+    Returns
+    -------
+    tuple of str
+        Nets that no other socket net reaches; when sockets are normalled in a ring, all of the ring.
+    """
+    before = nets_before(board, net)
+    fed = {jack.tip for jack in board.jacks if jack.switch in before and jack.tip != jack.switch}
+    return tuple(start for start in before if start not in fed) or before
+
+
 def terminators_seen(board: Board, net: str) -> tuple[str, ...]:
     """Terminators that a source plugged into a socket drives: resistors to 0 V on every net it reaches.
 
@@ -92,6 +112,5 @@ def lanes_sharing(board: Board, net: str) -> int:
     int
         Lanes, that lane included; 0 when none is on it.
     """
-    return max(
-        sum(lane.input_net in nets_after(board, start) for lane in board.channels) for start in nets_before(board, net)
-    )
+    inputs = [lane.input_net for lane in board.channels]
+    return max(sum(map(inputs.count, nets_after(board, start))) for start in heads(board, net))

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 
 from modgen.analysis.board import Board, Lane
-from modgen.analysis.feeding import nets_before, terminators_seen
+from modgen.analysis.feeding import heads, terminators_seen
 from modgen.analysis.glide import longest_resistance
 from modgen.analysis.model import Term
 from modgen.analysis.words import ohms
@@ -65,7 +65,7 @@ def scale_terms(board: Board, lane: Lane, signal: Signal) -> tuple[Term, ...]:
 
 def _source_loading(board: Board, lane: Lane, signal: Signal) -> Term:
     # the socket that feeds the lane may itself be fed through the chain: the source then drives more terminators
-    nets = nets_before(board, lane.input_net) if lane.input_net else ()
+    nets = heads(board, lane.input_net) if lane.input_net else ()
     worst, seen = 0.0, tuple[str, ...]()
     for net in nets:
         refs = terminators_seen(board, net)

@@ -76,6 +76,7 @@ def choose(spec: Spec, catalogue: Catalogue) -> Outcome:
     source: dict[str, Grid] = {}
     reach = Reach()
     looked = 0
+    grid: Grid | None = None
     for chunk in _portions(spec, caps, best):
         grid = Grid(spec, chunk, pots, resistors)
         looked += len(chunk)

@@ -69,10 +69,9 @@ def no_capacitor(spec: Spec, catalogue: Catalogue, refused: dict[str, str]) -> I
     return refusal(spec, "build.capacitor", what, why, "leave build.capacitor at auto, or name a film or C0G family")
 
 
-def network_fault(grid: Grid, room: Room) -> str:
-    """Why no network suits one amplifier type."""
-    able = grid.isolating >= room.isolating
-    if not able.any():
+def network_fault(grid: Grid | None, room: Room) -> str:
+    """Why no network suits one amplifier type; without a grid there was no capacitor to look at."""
+    if grid is None or not (able := grid.isolating >= room.isolating).any():
         return "no capacitor and control in the catalogue span the glide range with it"
     offset = float((grid.leak + room.bias * grid.through)[able].min())
     if offset > room.offset:

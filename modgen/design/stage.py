@@ -133,7 +133,11 @@ def terminators(spec: Spec, catalogue: Catalogue) -> Iterator[tuple[Resistor, fl
 
 
 def output_stages(spec: Spec, catalogue: Catalogue, amplifier: Amplifier) -> list[OutputStage]:
-    """Output stages that survive a short to 0 V, cheapest way of each kind first."""
+    """Output stages that survive a short to 0 V, cheapest way of each kind first.
+
+    The feedback resistor meets what is plugged into an output, so it protects the input behind it when the
+    module has no power, as the series resistor does at the other end.
+    """
     rail = Ends.of(spec.rails).greatest
     boards = spec.channels * spec.order.boards
 
@@ -164,7 +168,7 @@ def output_stages(spec: Spec, catalogue: Catalogue, amplifier: Amplifier) -> lis
     single = spec.jacks.outputs == spec.channels
     if spec.output.protection != "outside" and single and fit:
         series = fit[0]
-        feedback = series_resistor(spec, catalogue, amplifier, least=practice.LEAST_OUTPUT)
+        feedback = series_resistor(spec, catalogue, amplifier, least=clamp_resistance(spec, amplifier))
         if feedback is not None:
             least = practice.COMPENSATION_FACTOR * practice.CABLE_CAPACITANCE * series.resistance / feedback.resistance
             c0g = [c for c in catalogue.of(Capacitor) if c.mount == spec.build.mount and c.dielectric == "c0g"]
@@ -173,6 +177,11 @@ def output_stages(spec: Spec, catalogue: Catalogue, amplifier: Amplifier) -> lis
                 drive = series.resistance * (1 + series.tolerance) / spec.signal.load
                 stages.append(OutputStage(series, True, feedback, compensation, 0.0, drive, hot(series)))
     return stages
+
+
+def clamp_resistance(spec: Spec, amplifier: Amplifier) -> float:
+    """What keeps the current from a powered neighbour into an unpowered input within half its limit [ohm]."""
+    return (Ends.of(spec.rails).greatest - practice.JUNCTION) / (practice.CURRENT_DERATING * amplifier.clamp_current)
 
 
 def series_resistor(spec: Spec, catalogue: Catalogue, amplifier: Amplifier, least: float) -> Resistor | None:
@@ -199,7 +208,7 @@ def stages_of(spec: Spec, catalogue: Catalogue, forms: Sequence[Amplifier]) -> t
     if fault:
         return [], fault
     packages = packagings(forms, spec.channels, spec.build.prefer, spec.order.boards)
-    clamp = (Ends.of(spec.rails).greatest - practice.JUNCTION) / (practice.CURRENT_DERATING * amplifier.clamp_current)
+    clamp = clamp_resistance(spec, amplifier)
     series = series_resistor(spec, catalogue, amplifier, least=clamp)
     if series is None:
         return [], (

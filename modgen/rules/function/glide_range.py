@@ -16,8 +16,8 @@ LEAST_BOARDS = 0.90
 
 
 def percent(share: float) -> str:
-    """A share to a tenth of a per cent; what is not quite all is not called all, and what is not none not none."""
-    if 0 < share < 0.0005:
+    """A share to a tenth of a per cent; what is not quite all is not called all, nor what is rare none."""
+    if share < 0.0005:  # so many were drawn, and no more is known
         return "less than 0.1 %"
     if 0.9995 <= share < 1:
         return "more than 99.9 %"

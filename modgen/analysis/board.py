@@ -6,14 +6,15 @@ catalogue: a netlist that came back from layout is judged by what it says, not b
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 from functools import cached_property
+from itertools import product
 from typing import Protocol
 
 from modgen.analysis.lanes import Lane, find_lanes
 from modgen.analysis.model import Interval
-from modgen.analysis.parts import Jack, Neighbour, Section, field_number, reference_order
+from modgen.analysis.parts import Contact, Jack, Neighbour, Section, field_number, reference_order
 from modgen.catalogue.records import Amplifier, Capacitor
 from modgen.catalogue.records import Part as Record
 from modgen.formulas.loading import parallel
@@ -21,7 +22,7 @@ from modgen.netlist.model import Netlist, Part
 from modgen.problems import InputError, Place, Problem
 from modgen.units import QuantityError, read_value
 
-__all__ = ["Board", "Jack", "Lane", "Neighbour", "Records", "Section"]
+__all__ = ["Board", "Contact", "Jack", "Lane", "Neighbour", "Records", "Section"]
 
 GROUND = "0V"
 #: what a value is of, and how one is written
@@ -30,7 +31,9 @@ _QUANTITIES = {
     "control": ("resistance", "1M"),
     "capacitor": ("capacitance", "100n"),
 }
-_CLASSES = {"R": "resistor", "C": "capacitor", "D": "diode", "U": "amplifier", "J": "header"}
+_CLASSES = {"R": "resistor", "C": "capacitor", "D": "diode", "U": "amplifier", "J": "header", "S": "switch"}
+#: positions of a panel switch and the throw that is then joined to the common pin 2
+POSITIONS = {"1-2": "1", "2-3": "3"}
 
 
 class Records(Protocol):
@@ -104,7 +107,7 @@ class Board:
         return self.netlist.by_ref[ref]
 
     def kind(self, ref: str) -> str:
-        """``resistor``, ``capacitor``, ``diode``, ``amplifier``, ``control``, ``jack``, ``header`` or ``""``.
+        """Resistor, capacitor, diode, amplifier, control, jack, switch, header, or ``""`` when it is not known.
 
         From the record; of a part without one from its reference class (design convention, section 8).
         """
@@ -306,6 +309,27 @@ class Board:
         return tuple(
             Jack(ref, self.net(ref, "T"), self.net(ref, "TN"), self.net(ref, "S")) for ref in self.parts_of("jack")
         )
+
+    @cached_property
+    def contacts(self) -> tuple[Contact, ...]:
+        """Every contact of every panel switch that joins two nets; those of one switch are never closed together."""
+        out = []
+        for ref in self.parts_of("switch"):
+            common = self.net(ref, "2")
+            for position, pin in POSITIONS.items():
+                throw = self.net(ref, pin)
+                if common is not None and throw is not None and common != throw:
+                    out.append(Contact(ref, position, common, throw))
+        return tuple(out)
+
+    def switch_states(self, refs: Iterable[str]) -> Iterator[tuple[Contact, ...]]:
+        """The closed contacts in every combination of positions of these switches, the others open."""
+        choices = []
+        for ref in refs:
+            mine = [contact for contact in self.contacts if contact.ref == ref]
+            choices.append([[c for c in mine if c.position == position] for position in POSITIONS])
+        for state in product(*choices):
+            yield tuple(contact for closed in state for contact in closed)
 
     @cached_property
     def channels(self) -> tuple[Lane, ...]:

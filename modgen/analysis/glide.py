@@ -1,7 +1,9 @@
 """How long each lane takes, at its ends and in the middle of the control, and over tolerance.
 
-The lane is one resistance (isolating resistors and control in series) into one capacitance; the time by
-the spec's measure is the time constant times a factor of :mod:`modgen.formulas.glide`. Insulation of the
+The lane is one resistance (isolating resistors and control in series) into one capacitance, or with a range
+switch into one of two; the time by the spec's measure is the time constant times a factor of
+:mod:`modgen.formulas.glide`. The resistor that keeps the waiting capacitor of a range switch at the output's voltage
+hangs on the second buffer's output and has no part in the time. Insulation of the
 capacitor shortens the time by less than it costs in scale and is counted there (:mod:`modgen.analysis.accuracy`).
 """
 
@@ -10,7 +12,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from modgen.analysis.board import Board, Lane
-from modgen.analysis.model import ChannelGlide, Interval, Matching
+from modgen.analysis.model import ChannelGlide, Interval, Matching, RangeGlide
 from modgen.analysis.montecarlo import BoardDraws, draw_boards
 from modgen.catalogue.records import Control
 from modgen.formulas.glide import taper_resistance, time_factor
@@ -27,7 +29,8 @@ Tolerant = tuple[float, float]  # value, tolerance as a fraction
 class LaneValues:
     """The values that decide a lane's time; equal for lanes that are built alike.
 
-    ``end`` is the greatest resistance left at the end of travel, given as (ohm, share of the total).
+    ``end`` is the greatest resistance left at the end of travel, given as (ohm, share of the total). ``branches``
+    are those of the fast range, or of the only one; in the slow one the last ``dropped`` of them give way to ``added``.
     """
 
     isolating: tuple[Tolerant, ...]
@@ -38,11 +41,14 @@ class LaneValues:
     rising: bool
     adjustable: bool
     branches: tuple[tuple[Tolerant, ...], ...]
+    added: tuple[tuple[Tolerant, ...], ...] = ()
+    dropped: int = 0
 
     @classmethod
     def of(cls, board: Board, lane: Lane) -> LaneValues:
         """Read a lane's values from the netlist, the control's end resistance and law from its record."""
         record = board.record(lane.control)
+        added = [branch for branch in lane.slow_branches if branch not in lane.branches]
         return cls(
             isolating=tuple(_tolerant(board, ref) for ref in lane.isolating),
             control=_tolerant(board, lane.control),
@@ -52,7 +58,14 @@ class LaneValues:
             rising=lane.wiring.rising,
             adjustable=lane.wiring.adjustable,
             branches=tuple(tuple(_tolerant(board, ref) for ref in b.refs) for b in lane.branches),
+            added=tuple(tuple(_tolerant(board, ref) for ref in b.refs) for b in added),
+            dropped=sum(branch not in lane.slow_branches for branch in lane.branches),
         )
+
+    @property
+    def ranged(self) -> bool:
+        """Whether a switch gives it two ranges."""
+        return bool(self.added)
 
     def series(self, sign: int) -> float:
         """Isolating resistance: nominal (0), at its low (-1) or high (1) end [ohm]."""
@@ -68,10 +81,10 @@ class LaneValues:
             return 0.0
         return max(self.end[0], self.end[1] * self.track(sign))
 
-    def capacitance(self, sign: int) -> float:
-        """Parallel branches of capacitors in series [F]."""
+    def capacitance(self, sign: int, slow: bool = False) -> float:
+        """Parallel branches of capacitors in series, in the fast or the slow range [F]."""
         total = 0.0
-        for branch in self.branches:
+        for branch in (*self.branches[: len(self.branches) - self.dropped], *self.added) if slow else self.branches:
             total += 1 / sum(1 / (value * (1 + sign * tolerance)) for value, tolerance in branch)
         return total
 
@@ -99,13 +112,13 @@ class LaneValues:
         share = float(taper_resistance(self.taper, self.middle, rotation))
         return share if self.rising else 1.0 - share
 
-    def time_constant(self, rotation: float, sign: int = 0) -> float:
-        """Time constant at a rotation; the corners take every part to the same side [s]."""
-        return self.resistance(rotation, sign) * self.capacitance(sign)
+    def time_constant(self, rotation: float, sign: int = 0, slow: bool = False) -> float:
+        """Time constant at a rotation, in the fast or the slow range; corners take every part to the same side [s]."""
+        return self.resistance(rotation, sign) * self.capacitance(sign, slow)
 
-    def interval(self, rotation: float, factor: float) -> Interval:
-        """Time at a rotation with its worst-case corners [s]."""
-        low, nominal, high = (factor * self.time_constant(rotation, sign) for sign in (-1, 0, 1))
+    def interval(self, rotation: float, factor: float, slow: bool = False) -> Interval:
+        """Time at a rotation, in the fast or the slow range, with its worst-case corners [s]."""
+        low, nominal, high = (factor * self.time_constant(rotation, sign, slow) for sign in (-1, 0, 1))
         return Interval(nominal, low, high)
 
     @property
@@ -124,7 +137,7 @@ def factor_of(glide: Glide) -> float:
     return float(time_factor(glide.measure, glide.step, glide.within))
 
 
-def time_at(board: Board, lane: Lane, glide: Glide, rotation: float) -> Interval:
+def time_at(board: Board, lane: Lane, glide: Glide, rotation: float, slow: bool = False) -> Interval:
     """Time of a lane at a rotation of its control.
 
     Parameters
@@ -137,13 +150,46 @@ def time_at(board: Board, lane: Lane, glide: Glide, rotation: float) -> Interval
         How the time is measured.
     rotation
         Share of the travel, 0 counter-clockwise to 1 clockwise. [-]
+    slow
+        Whether a range switch stands at its slow range; without one there is but one range. [-]
 
     Returns
     -------
     Interval
         Nominal and worst-case corners [s].
     """
-    return LaneValues.of(board, lane).interval(rotation, factor_of(glide))
+    return LaneValues.of(board, lane).interval(rotation, factor_of(glide), slow)
+
+
+def range_glides(lane: Lane, values: LaneValues, factor: float) -> tuple[RangeGlide, ...]:
+    """Shortest, middle and longest time in each range of a lane.
+
+    Parameters
+    ----------
+    lane
+        One of a board's lanes.
+    values
+        Its values.
+    factor
+        Time over time constant. [-]
+
+    Returns
+    -------
+    tuple of RangeGlide
+        Fast, then slow; none without a range switch.
+    """
+    if lane.switch is None:
+        return ()
+    return tuple(
+        RangeGlide(
+            name=name,
+            position=position,
+            shortest=values.interval(values.fastest, factor, slow),
+            middle=values.interval(0.5, factor, slow),
+            longest=values.interval(1 - values.fastest, factor, slow),
+        )
+        for name, position, slow in (("fast", lane.switch.fast, False), ("slow", lane.switch.slow, True))
+    )
 
 
 def longest_resistance(board: Board, lane: Lane) -> float:
@@ -165,7 +211,8 @@ def channel_glides(board: Board, glide: Glide) -> tuple[ChannelGlide, ...]:
     Returns
     -------
     tuple of ChannelGlide
-        By channel. Lanes of equal values are counted together.
+        By channel. Lanes of equal values are counted together. With a range switch the shortest time is that of the
+        fast range, middle and longest are those of the slow one.
 
     Raises
     ------
@@ -185,13 +232,14 @@ def channel_glides(board: Board, glide: Glide) -> tuple[ChannelGlide, ...]:
                 control=lane.control,
                 capacitors=lane.capacitors,
                 shortest=values.interval(values.fastest, factor),
-                middle=values.interval(0.5, factor),
-                longest=values.interval(1 - values.fastest, factor),
-                time_constant_longest=values.time_constant(1 - values.fastest),
+                middle=values.interval(0.5, factor, slow=True),
+                longest=values.interval(1 - values.fastest, factor, slow=True),
+                time_constant_longest=values.time_constant(1 - values.fastest, slow=True),
                 inside=inside / drawn,
                 inside_low=float(low),
                 inside_high=float(high),
                 boards=draws.boards if draws else 0,
+                ranges=range_glides(lane, values, factor),
             )
         )
     return tuple(out)
@@ -252,7 +300,8 @@ def matchings(board: Board, glide: Glide) -> tuple[Matching, ...]:
 
     Notes
     -----
-    From the tolerances of resistors, capacitors and controls and from the resistance left at the end of travel.
+    From the tolerances of resistors, capacitors and controls and from the resistance left at the end of travel. With
+    range switches the counter-clockwise end is compared in the fast range and all else in the slow one.
     How far a control's law is off from its neighbour's is not in the catalogue, since makers do not state it for
     single controls; in the middle of the travel it comes on top.
     """
@@ -262,7 +311,7 @@ def matchings(board: Board, glide: Glide) -> tuple[Matching, ...]:
     lanes = [LaneValues.of(board, lane) for lane in board.channels]
     out = []
     for spread in draws.spreads:
-        times = [lane.interval(spread.rotation, 1.0) for lane in lanes]
+        times = [lane.interval(spread.rotation, 1.0, slow=spread.rotation > 0.0) for lane in lanes]
         nominal = [time.nominal for time in times]
         out.append(
             Matching(

@@ -1,7 +1,8 @@
 """Find the glide lanes of a board by structure: no role field and no net name decides.
 
 A lane is a buffer whose non-inverting input carries capacitance to 0 V and a way through exactly one
-control, and resistors in series with it, back to the output of another amplifier section.
+control, and resistors in series with it, back to the output of another amplifier section. A panel switch with
+a contact on that input that changes the capacitance gives the lane two ranges.
 """
 
 from __future__ import annotations
@@ -14,6 +15,10 @@ from modgen.analysis.parts import Section, reference_order
 
 if TYPE_CHECKING:
     from modgen.analysis.board import Board
+
+
+#: positions of a switch
+POSITIONS = ("1-2", "2-3")
 
 
 @dataclass(frozen=True)
@@ -53,6 +58,23 @@ class Branch:
 
 
 @dataclass(frozen=True)
+class RangeSwitch:
+    """A switch that gives a lane a slow range, in which more capacitance stands from the glide net to 0 V.
+
+    ``slow`` and ``fast`` are its positions, ``1-2`` or ``2-3``. ``waiting`` is the net of the capacitors that the fast
+    range leaves out, ``keepers`` are the resistors that hold them meanwhile at the output's voltage; without any
+    the output jumps when the slow range is chosen.
+    """
+
+    ref: str
+    slow: str
+    fast: str
+    branches: tuple[Branch, ...]  # every way to 0 V in the slow range
+    waiting: str
+    keepers: tuple[str, ...]
+
+
+@dataclass(frozen=True)
 class Feed:
     """One output: the resistor between the amplifier and the socket (``""`` for none), net, sockets."""
 
@@ -75,12 +97,18 @@ class Lane:
     control: str
     wiring: Wiring
     glide_net: str
-    branches: tuple[Branch, ...]  # parallel ways to 0 V
+    branches: tuple[Branch, ...]  # parallel ways to 0 V; with a range switch those of the fast range
     second: Section
     feeds: tuple[Feed, ...]
     inside_loop: bool
     feedback: str | None
     compensation: str | None
+    switch: RangeSwitch | None = None
+
+    @property
+    def slow_branches(self) -> tuple[Branch, ...]:
+        """Parallel ways to 0 V in the slow range; without a range switch there is but one range."""
+        return self.switch.branches if self.switch else self.branches
 
     @property
     def buffers(self) -> tuple[tuple[str, Section], tuple[str, Section]]:
@@ -89,8 +117,13 @@ class Lane:
 
     @property
     def capacitors(self) -> tuple[str, ...]:
-        """Every glide capacitor."""
-        return tuple(ref for branch in self.branches for ref in branch.refs)
+        """Every glide capacitor, in whichever range."""
+        return tuple(dict.fromkeys(ref for branch in (*self.branches, *self.slow_branches) for ref in branch.refs))
+
+    @property
+    def slow_capacitors(self) -> tuple[str, ...]:
+        """The glide capacitors of the slow range, or of the only one."""
+        return tuple(ref for branch in self.slow_branches for ref in branch.refs)
 
     @property
     def output_series(self) -> tuple[str, ...]:
@@ -143,7 +176,7 @@ def _lane(board: Board, second: Section) -> Lane | None:
     glide_net = second.noninverting
     if glide_net is None or glide_net in board.supply_nets:
         return None
-    branches = _branches(board, glide_net)
+    branches, switch = _ranges(board, glide_net, second)
     way = _way_to_output(board, glide_net, second)
     if not branches or way is None:
         return None
@@ -171,7 +204,49 @@ def _lane(board: Board, second: Section) -> Lane | None:
         inside_loop=inside,
         feedback=feedback,
         compensation=compensation,
+        switch=switch,
     )
+
+
+def _ranges(board: Board, net: str, second: Section) -> tuple[tuple[Branch, ...], RangeSwitch | None]:
+    """Ways to 0 V in the fast range, or in the only one, and the switch that makes another."""
+    fixed = _branches(board, net)
+    for ref in dict.fromkeys(contact.ref for contact in board.contacts if net in (contact.common, contact.throw)):
+        # what each position puts on the net: the capacitors behind the contact that it closes
+        behind: dict[str, tuple[str, tuple[Branch, ...]]] = {}
+        for position in POSITIONS:
+            other = _behind(board, ref, position, net)
+            behind[position] = (other, _branches(board, other) if other else ())
+        fast, slow = sorted(behind, key=lambda position: _capacitance(board, behind[position][1]))
+        if not behind[slow][1]:
+            continue  # it switches something else
+        ways = (*fixed, *behind[fast][1])
+        if not ways:
+            return (), None  # without a capacitor in one position it is no lane
+        waiting = behind[slow][0]
+        held = {waiting, _behind(board, ref, fast, waiting)}
+        senses = {second.output, *(feed.net for feed in _feeds(board, second)[0])}
+        keepers = tuple(n.ref for at in sorted(held) for n in board.between(at, "resistor") if n.net in senses)
+        return ways, RangeSwitch(ref, slow, fast, (*fixed, *behind[slow][1]), waiting, keepers)
+    return fixed, None
+
+
+def _behind(board: Board, ref: str, position: str, net: str) -> str:
+    """The net that a switch joins to a net in a position; ``""`` for none, or for a supply."""
+    for contact in board.contacts:
+        if (contact.ref, contact.position) == (ref, position) and net in (contact.common, contact.throw):
+            other = contact.throw if net == contact.common else contact.common
+            return "" if other in board.supply_nets else other
+    return ""
+
+
+def _capacitance(board: Board, branches: tuple[Branch, ...]) -> float:
+    """Nominal capacitance [F]; a value that cannot be read counts as none, and is refused elsewhere."""
+    total = 0.0
+    for branch in branches:
+        values = [board.value(ref) or 0.0 for ref in branch.refs]
+        total += 1 / sum(1 / value for value in values) if all(values) else 0.0
+    return total
 
 
 def _branches(board: Board, net: str) -> tuple[Branch, ...]:

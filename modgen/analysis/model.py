@@ -16,11 +16,23 @@ class Interval:
 
 
 @dataclass(frozen=True)
+class RangeGlide:
+    """Glide of one channel in one position of its range switch [s]; ``position`` is ``1-2`` or ``2-3``."""
+
+    name: str  # fast, slow
+    position: str
+    shortest: Interval
+    middle: Interval
+    longest: Interval
+
+
+@dataclass(frozen=True)
 class ChannelGlide:
     """Glide of one channel, by the measure the spec asks for [s], read from the netlist.
 
     ``middle`` is at half travel. ``inside`` is the Monte Carlo share of such channels whose control covers the
-    whole asked range, with its 95 % Wilson interval; ``boards`` is how many boards were drawn.
+    whole asked range, with its 95 % Wilson interval; ``boards`` is how many boards were drawn. With a range switch
+    ``shortest`` is of the fast range, ``middle`` and ``longest`` are of the slow one; ``ranges`` has all of both.
     """
 
     channel: int
@@ -35,6 +47,8 @@ class ChannelGlide:
     inside_low: float
     inside_high: float
     boards: int
+    #: fast, then slow; empty without a range switch
+    ranges: tuple[RangeGlide, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -65,7 +79,8 @@ class Travel:
     """Time against rotation, and what shares of the rotation are spent where, with nominal values [-].
 
     ``asked`` lies in the asked range, ``lowest_decade`` from its shortest time to ten times that (or to its longest),
-    ``faster`` below the range and ``slower`` above it; asked, faster and slower are the whole travel.
+    ``faster`` below the range and ``slower`` above it; asked, faster and slower are the whole travel. ``range`` is
+    ``fast`` or ``slow`` with a range switch, whose positions have a travel each.
     """
 
     channel: int
@@ -76,6 +91,7 @@ class Travel:
     lowest_decade: float
     faster: float
     slower: float
+    range: str = ""
 
 
 @dataclass(frozen=True)

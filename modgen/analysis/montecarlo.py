@@ -92,7 +92,8 @@ def draw_boards(
     -------
     BoardDraws
         A channel covers the range when its shortest time is at most ``shortest`` and its longest at least
-        ``longest``.
+        ``longest``; with a range switch these are of the fast and of the slow range, and the longest time of the
+        fast range must not be below the shortest of the slow one.
 
     Notes
     -----
@@ -117,10 +118,13 @@ def draw_boards(
         slowest: list[Array] = []
         for index, lane in enumerate(lanes):
             drawn = _draw(generator, lane, size)
-            covers = (factor * drawn.time_constant(0.0) <= shortest) & (factor * drawn.time_constant(1.0) >= longest)
+            covers = factor * drawn.time_constant(0.0) <= shortest
+            covers &= factor * drawn.time_constant(1.0, slow=True) >= longest
+            if lane.ranged:
+                covers &= drawn.time_constant(1.0) >= drawn.time_constant(0.0, slow=True)
             covering[index] += int(np.count_nonzero(covers))
             every &= covers
-            times = [drawn.time_constant(lane.track_share(at)) for at in compared]
+            times = [drawn.time_constant(lane.track_share(at), slow=at > 0.0) for at in compared]
             fastest = [np.minimum(a, b) for a, b in zip(fastest, times, strict=True)] if fastest else times
             slowest = [np.maximum(a, b) for a, b in zip(slowest, times, strict=True)] if slowest else times
         inside += int(np.count_nonzero(every))
@@ -144,15 +148,17 @@ class _Drawn:
     track: Array  # ohm
     residual: Array  # ohm
     capacitance: Array  # F
+    slow_capacitance: Array  # F
     adjustable: bool
 
-    def time_constant(self, share: float) -> Array:
-        """With a share of the track in the way [s]."""
+    def time_constant(self, share: float, slow: bool = False) -> Array:
+        """With a share of the track in the way, in the fast or the slow range [s]."""
+        capacitance = self.slow_capacitance if slow else self.capacitance
         if not self.adjustable:
-            return self.capacitance * (self.series + self.track)
+            return capacitance * (self.series + self.track)
         turned: Array = self.track * share
         # the end of the track is as far as the wiper gets
-        return self.capacitance * (self.series + _greater(self.residual, turned))
+        return capacitance * (self.series + _greater(self.residual, turned))
 
 
 def _draw(generator: np.random.PCG64, lane: LaneValues, size: int) -> _Drawn:
@@ -177,17 +183,21 @@ def _draw(generator: np.random.PCG64, lane: LaneValues, size: int) -> _Drawn:
     for resistor in lane.isolating:
         series += part(resistor)
     track = part(lane.control)
-    capacitance = np.zeros(size)
-    for branch in lane.branches:
+    capacitance, slow = np.zeros(size), np.zeros(size)
+    stays = len(lane.branches) - lane.dropped
+    for index, branch in enumerate((*lane.branches, *lane.added)):
         elastance = np.zeros(size)
         for capacitor in branch:
             elastance += 1.0 / part(capacitor)
-        capacitance += 1.0 / elastance
+        if index < len(lane.branches):
+            capacitance += 1.0 / elastance
+        if lane.ranged and (index < stays or index >= len(lane.branches)):
+            slow += 1.0 / elastance
     residual = np.zeros(size)
     if lane.adjustable:
         # an end resistance stated in ohms can be more than a small control has in all
         residual = uniform() * np.minimum(_greater(np.full(size, lane.end[0]), lane.end[1] * track), track)
-    return _Drawn(series, track, residual, capacitance, lane.adjustable)
+    return _Drawn(series, track, residual, capacitance, slow if lane.ranged else capacitance, lane.adjustable)
 
 
 def _greater(one: Array, other: Array) -> Array:

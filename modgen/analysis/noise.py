@@ -48,6 +48,9 @@ def noises(board: Board, signal: Signal) -> tuple[Noise, ...]:
 
     Notes
     -----
+    With a range switch the fast end is of the fast range and the slow end of the slow one, the extremes of what is
+    filtered; the resistor that keeps the waiting capacitor hangs on the second buffer's output and adds nothing.
+
     Terms add as squares. Before the glide node: voltage noise of the first buffer, Johnson noise of source,
     terminator and series resistor, and the shot noise of its bias current in them. On it: Johnson noise of
     isolating resistor and control, shot noise of the second buffer's bias current. All of it through the low
@@ -62,7 +65,7 @@ def _noise(board: Board, lane: Lane, signal: Signal, end: str) -> Noise:
     values = LaneValues.of(board, lane)
     rotation = 0.0 if (end == "fast") == values.rising else 1.0
     glide = values.resistance(rotation)
-    capacitance = values.capacitance(0)
+    capacitance = values.capacitance(0, slow=end == "slow")
     corner = _corner(glide, capacitance)
     source = parallel(signal.source, *(board.resistance(ref).nominal for ref in lane.terminators))
     source += sum(board.resistance(ref).nominal for ref in lane.input_series)

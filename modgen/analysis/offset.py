@@ -124,7 +124,7 @@ def offset_terms(board: Board, lane: Lane, signal: Signal, temperature: float = 
                 "leakage of the glide capacitor",
                 current_offset(leakage, resistance),
                 "Ileak (Rcontrol + Riso)",
-                f"{', '.join(lane.capacitors)}: {amps(leakage)} through {ohms(resistance)}",
+                f"{', '.join(lane.slow_capacitors)}: {amps(leakage)} through {ohms(resistance)}",
                 "a film capacitor",
             )
         )
@@ -264,7 +264,7 @@ def _floor(board: Board, lane: Lane, signal: Signal) -> float:
 def _leakage_current(board: Board, lane: Lane) -> float:
     """Greatest specified leakage of the glide capacitors to 0 V [A]; makers state it at rated voltage."""
     total = 0.0
-    for branch in lane.branches:
+    for branch in lane.slow_branches:
         currents = []
         for ref in branch.refs:
             record = board.record(ref)

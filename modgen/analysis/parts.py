@@ -47,6 +47,16 @@ class Jack:
 
 
 @dataclass(frozen=True)
+class Contact:
+    """A contact of a panel switch: closed in one position, ``1-2`` or ``2-3``, where it joins two nets."""
+
+    ref: str
+    position: str
+    common: str  # net of pin 2
+    throw: str  # net of pin 1 or 3
+
+
+@dataclass(frozen=True)
 class Neighbour:
     """A part seen from one of its nets: its pin there, and the net and pin on its other side."""
 

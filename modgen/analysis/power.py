@@ -127,11 +127,39 @@ def _draw(board: Board, rail: str, signal: Signal, positive: bool) -> Draw:
             greatest += sum(reach / (_loop_resistance(board, feed.resistor) + signal.load) for feed in lane.feeds)
         if rail in (lane.first.positive, lane.first.negative):
             peak += charging_current(board, lane, signal)
+        if rail in (lane.second.positive, lane.second.negative):
+            peak += keeping_current(board, lane, signal)
     return Draw(typical, greatest, greatest + peak)
 
 
 def _loop_resistance(board: Board, resistor: str) -> float:
     return board.resistance(resistor).low if resistor else 0.0
+
+
+def keeping_current(board: Board, lane: Lane, signal: Signal) -> float:
+    """Greatest current into the waiting capacitor of a range switch.
+
+    Parameters
+    ----------
+    board
+        The netlist seen as electronics.
+    lane
+        One of its lanes.
+    signal
+        The span of the signal.
+
+    Returns
+    -------
+    float
+        The whole span across the resistor that keeps it at the output's voltage, limited by the greatest
+        short-circuit current of the buffer; 0 without a range switch [A].
+    """
+    if lane.switch is None or not lane.switch.keepers:
+        return 0.0
+    series = board.least_parallel(lane.switch.keepers)
+    limit = lane.second.record.short_circuit_most
+    span = signal.high - signal.low
+    return limit if series <= 0 else min(limit, span / series)
 
 
 def charging_current(board: Board, lane: Lane, signal: Signal) -> float:

@@ -112,8 +112,9 @@ def _output_loading(board: Board, lane: Lane, signal: Signal) -> Term:
 
 def _insulation(board: Board, lane: Lane) -> Term | None:
     """The glide resistance into the insulation of the capacitor; None where makers state leakage instead."""
+    # the slow range has the most capacitance, and so the least insulation
     conductance = 0.0
-    for branch in lane.branches:
+    for branch in lane.slow_branches:
         resistances = [_insulation_resistance(board, ref) for ref in branch.refs]
         if all(r is not None for r in resistances):
             conductance += 1 / sum(r for r in resistances if r is not None)
@@ -125,7 +126,7 @@ def _insulation(board: Board, lane: Lane) -> Term | None:
         "insulation of the glide capacitor",
         insulation_error(resistance, 1 / conductance),
         "R/(R + Rins)",
-        f"{', '.join(lane.capacitors)}: {ohms(1 / conductance)} behind {ohms(resistance)}",
+        f"{', '.join(lane.slow_capacitors)}: {ohms(1 / conductance)} behind {ohms(resistance)}",
         "a dielectric with a longer insulation time constant, or a shorter longest glide",
     )
 

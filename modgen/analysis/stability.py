@@ -61,6 +61,11 @@ def stabilities(board: Board, signal: Signal) -> tuple[Stability, ...]:
     Resistors stand at the low end of their tolerance where they isolate, since less isolation is worse;
     capacitors at their nominal value, which hardly counts at the crossover. Every output of a lane has the
     same cable.
+
+    With a range switch the glide capacitor is that of the fast range: the larger one of the slow range isolates by the
+    same resistor and is as good as a short at the crossover. The resistor that keeps the waiting capacitor, ten
+    kilohms or so into what is a short at the crossover too, takes some per cent of the second buffer's gain and turns
+    no phase; it is not counted.
     """
     out = []
     for lane in board.channels:

@@ -23,7 +23,9 @@ CUSTOMARY_MIDDLE = 0.15
 _HALVINGS = 60
 
 
-def travel(board: Board, lane: Lane, glide: Glide, positions: int = POSITIONS, taper: str = "") -> Travel:
+def travel(
+    board: Board, lane: Lane, glide: Glide, positions: int = POSITIONS, taper: str = "", slow: bool = False
+) -> Travel:
     """Time of a lane at evenly spaced rotations, with its tolerance band, and how finely it can be set.
 
     Parameters
@@ -39,6 +41,8 @@ def travel(board: Board, lane: Lane, glide: Glide, positions: int = POSITIONS, t
     taper
         ``linear``, ``log`` or ``reverse-log`` to see what another control of the same resistance would do; the
         control's own when empty. [-]
+    slow
+        Whether a range switch stands at its slow range; without one there is but one range. [-]
 
     Returns
     -------
@@ -75,7 +79,7 @@ def travel(board: Board, lane: Lane, glide: Glide, positions: int = POSITIONS, t
 
     def time(rotation: float) -> float:
         # from the fast end, whichever way the control is wired
-        return factor * values.time_constant(rotation if values.rising else 1.0 - rotation)
+        return factor * values.time_constant(rotation if values.rising else 1.0 - rotation, slow=slow)
 
     decade = min(10 * glide.shortest, glide.longest)
     below, past = _share_under(time, glide.shortest, reached=False), _share_under(time, glide.longest, reached=True)
@@ -84,12 +88,20 @@ def travel(board: Board, lane: Lane, glide: Glide, positions: int = POSITIONS, t
         control=lane.control,
         taper=values.taper,
         points=tuple(
-            TravelPoint(at, values.interval(at, factor)) for at in (n / (positions - 1) for n in range(positions))
+            TravelPoint(at, values.interval(at, factor, slow)) for at in (n / (positions - 1) for n in range(positions))
         ),
         asked=max(0.0, past - below),
         lowest_decade=max(0.0, _share_under(time, decade, reached=True) - below),
         faster=below,
         slower=1.0 - past,
+        range=("slow" if slow else "fast") if values.ranged else "",
+    )
+
+
+def _of_ranges(board: Board, lane: Lane, glide: Glide, taper: str = "") -> tuple[Travel, ...]:
+    """The travel in the fast range, and with a range switch in the slow one."""
+    return tuple(
+        travel(board, lane, glide, taper=taper, slow=slow) for slow in ((False, True) if lane.switch else (False,))
     )
 
 
@@ -106,14 +118,14 @@ def travels(board: Board, glide: Glide) -> tuple[Travel, ...]:
     Returns
     -------
     tuple of Travel
-        By channel.
+        By channel; with a range switch the fast range of each, then its slow one.
 
     Raises
     ------
     InputError
         When a value in a lane is not a number above zero.
     """
-    return tuple(travel(board, lane, glide) for lane in board.channels)
+    return tuple(found for lane in board.channels for found in _of_ranges(board, lane, glide))
 
 
 def tapers(board: Board, glide: Glide) -> tuple[Travel, ...]:
@@ -129,7 +141,8 @@ def tapers(board: Board, glide: Glide) -> tuple[Travel, ...]:
     Returns
     -------
     tuple of Travel
-        Linear, log and reverse-log; none when there is no lane, or when its control is not wired to be turned.
+        Linear, log and reverse-log, each in every range; none when there is no lane, or when its control is not wired
+        to be turned.
 
     Raises
     ------
@@ -139,7 +152,7 @@ def tapers(board: Board, glide: Glide) -> tuple[Travel, ...]:
     lane = next(iter(board.channels), None)
     if lane is None or not lane.wiring.adjustable:
         return ()
-    return tuple(travel(board, lane, glide, taper=taper) for taper in TAPERS)
+    return tuple(found for taper in TAPERS for found in _of_ranges(board, lane, glide, taper))
 
 
 def _with_taper(values: LaneValues, taper: str) -> LaneValues:

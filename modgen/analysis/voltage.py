@@ -53,6 +53,10 @@ def net_bounds(board: Board, rails: Rails | None) -> dict[str, Bound]:
         if jack.tip and jack.switch:
             ties[jack.tip].add(jack.switch)
             ties[jack.switch].add(jack.tip)
+    for contact in board.contacts:
+        # a capacitor keeps from one position what it takes to the other, so that both count at once
+        ties[contact.common].add(contact.throw)
+        ties[contact.throw].add(contact.common)
 
     _spread(names, ties, driven, found)
     # nodes that no current can reach follow their capacitors, from a node that is known
@@ -85,7 +89,7 @@ def _driven(board: Board, low: float, high: float) -> dict[str, tuple[float, flo
         pins = [held.get(net, (low, high)) if net else (low, high) for net in (section.positive, section.negative)]
         drive(section.output, min(p[0] for p in pins), max(p[1] for p in pins))
     for ref in board.unknown:
-        if board.kind(ref) in ("resistor", "capacitor", "diode", "control", "jack", "header"):
+        if board.kind(ref) in ("resistor", "capacitor", "diode", "control", "jack", "switch", "header"):
             continue
         nets = {net for pin in board.pins(ref) if (net := board.net(ref, pin))}
         if len(nets) > 1:

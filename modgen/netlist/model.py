@@ -7,7 +7,7 @@ outputs see nothing else of the circuit. A pin that is on no net is simply in no
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from functools import cached_property
 
 
@@ -57,8 +57,8 @@ class Netlist:
     title: str
     parts: tuple[Part, ...]
     nets: tuple[Net, ...]
-    #: messages of the library's own electrical check, if it ran: (level, text)
-    library_messages: tuple[tuple[str, str], ...] = field(default=())
+    #: messages of the library's own electrical check: (level, text); None when it did not run, as on a file
+    library_messages: tuple[tuple[str, str], ...] | None = None
 
     @cached_property
     def by_ref(self) -> Mapping[str, Part]:

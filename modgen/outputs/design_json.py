@@ -11,6 +11,7 @@ import math
 from collections.abc import Mapping
 from typing import TYPE_CHECKING, Any
 
+from modgen.outputs.analyses_json import accuracy_json, analyses_json
 from modgen.spec import resolved
 
 if TYPE_CHECKING:
@@ -56,8 +57,9 @@ def design_json(job: Job) -> bytes:
         "choices": [_choice(choice) for choice in job.design.choices],
         "parts": _parts(job.netlist, job.design),
         "rails": _rails(job.analyses),
-        "accuracy": _accuracy(job.analyses),
+        "accuracy": accuracy_json(job.analyses.accuracy),
         "headroom": _headroom(job.analyses),
+        **analyses_json(job.analyses),
         "bounds": [{"net": b.net, "low": b.low, "high": b.high} for b in job.analyses.bounds],
     }
     text = json.dumps(tidy(data), indent=2, ensure_ascii=False, allow_nan=False)
@@ -195,31 +197,6 @@ def _rails(analyses: Analyses) -> list[dict[str, Any]]:
     ]
 
 
-def _accuracy(analyses: Analyses) -> dict[str, Any]:
-    budget = analyses.accuracy
-    return {
-        "scale": {"worst": budget.scale_worst, "rss": budget.scale_rss, "budget": budget.scale_budget},
-        "offset": {
-            "worst": budget.offset_worst,
-            "rss": budget.offset_rss,
-            "budget": budget.offset_budget,
-            "hot": budget.offset_hot,
-            "hot_temperature": budget.hot,
-        },
-        "terms": [
-            {
-                "kind": term.kind,
-                "name": term.name,
-                "worst": term.worst,
-                "formula": term.formula,
-                "source": term.source,
-                "remedy": term.remedy,
-            }
-            for term in budget.terms
-        ],
-    }
-
-
 def _headroom(analyses: Analyses) -> list[dict[str, Any]]:
     return [
         {
@@ -228,6 +205,8 @@ def _headroom(analyses: Analyses) -> list[dict[str, Any]]:
             "parts": list(room.parts),
             "needed": {"low": room.needed_low, "high": room.needed_high},
             "can": {"low": room.can_low, "high": room.can_high},
+            "allowance": room.allowance,
+            "shortfall": room.shortfall,
             "margin": room.margin,
         }
         for room in analyses.headroom

@@ -6,11 +6,22 @@ comes from a spec or a catalogue is escaped by the templates; only this package'
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 from functools import cache
 from typing import TYPE_CHECKING
 
-from modgen.outputs.wording import percent, plural, prose, quantity, short_ranges, signed, verdict
+from modgen.outputs.wording import (
+    NOTHING,
+    number_words,
+    percent,
+    plural,
+    prose,
+    quantity,
+    short_ranges,
+    signed,
+    verdict,
+)
 
 if TYPE_CHECKING:
     from jinja2 import Environment
@@ -97,6 +108,41 @@ def columns(*labels: str) -> tuple[Column, ...]:
         else:
             made.append(Column(label))
     return tuple(made)
+
+
+def collapsed(
+    rows: Iterable[tuple[str, tuple[str, ...], tuple[str | Cell, ...]]],
+) -> list[tuple[str, str, tuple[str | Cell, ...]]]:
+    """Rows that show the same become one, in the order of the first of each.
+
+    Parameters
+    ----------
+    rows
+        What a row is about (a channel's number, or a word), its references, and the cells it shows. [-]
+
+    Returns
+    -------
+    list of tuple
+        Numbers as ranges (words that are no numbers have to be the same), references in ranges, the cells.
+
+    Examples
+    --------
+    >>> collapsed([("1", ("R1",), ("a",)), ("2", ("R2",), ("b",)), ("3", ("R3",), ("a",))])
+    [('1, 3', 'R1, R3', ('a',)), ('2', 'R2', ('b',))]
+    """
+    alike: dict[tuple[tuple[str | Cell, ...], str], tuple[list[str], list[str]]] = {}
+    for about, refs, shown in rows:
+        numbers, parts = alike.setdefault((shown, "" if about.isdecimal() else about), ([], []))
+        numbers.append(about)
+        parts.extend(refs)
+    return [
+        (
+            number_words(numbers) if numbers[0].isdecimal() else numbers[0],
+            short_ranges(parts) or NOTHING,
+            shown,
+        )
+        for (shown, _), (numbers, parts) in alike.items()
+    ]
 
 
 @cache

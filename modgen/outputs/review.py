@@ -5,10 +5,13 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping
 from typing import TYPE_CHECKING, Any
 
+from modgen.analysis.accuracy import LEFT_OUT
 from modgen.outputs.bom import bom_lines
 from modgen.outputs.choicewords import choice_words
 from modgen.outputs.pages import Cell, Table, columns, render
+from modgen.outputs.review_faults import short_tables, supply_state_tables
 from modgen.outputs.review_figures import accuracy_tables, glide_tables, headroom_table, margin_cell, rails_table
+from modgen.outputs.review_signal import noise_tables, stability_tables, travel_tables
 from modgen.outputs.wording import NOTHING, chosen, plural, quantity, short_ranges, signed
 from modgen.spec import resolved
 from modgen.units import UNITS
@@ -60,9 +63,15 @@ def review_html(job: Job) -> bytes:
         "findings": tuple((f, _measure(f)) for f in job.report.findings if not f.waived),
         "rules": rules_table(job.report.checked),
         "glide": glide_tables(job),
+        "travel": travel_tables(job),
         "accuracy": accuracy_tables(job),
+        "left_out": LEFT_OUT,
+        "noise": noise_tables(job),
+        "stability": stability_tables(job),
         "headroom": headroom_table(job),
         "rails": rails_table(job),
+        "shorts": short_tables(job),
+        "supply_states": supply_state_tables(job),
         "waivers": waiver_table(job),
         "bom": bom_table(job),
         "evidence": evidence_table(job),

@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable, Mapping
 from typing import TYPE_CHECKING
 
 from modgen.analysis.model import Interval
+from modgen.analysis.montecarlo import DISTRIBUTIONS
 from modgen.outputs.benchtest import scale_words
 from modgen.outputs.marking import net_words
 from modgen.outputs.pages import Cell, Table, columns
@@ -83,8 +85,8 @@ def glide_tables(job: Job) -> tuple[Table, ...]:
             tuple(shares),
             note=f"Of channels like these {percent(min(c.inside for c in a.glide))} cover the range; of boards, on "
             f"which every channel must, {percent(a.boards_inside)}, if their parts differ independently. Parts of one "
-            "lot are alike, so the true share of boards lies between the two. Every part is drawn from its "
-            "tolerance, with a fixed seed."
+            "lot are alike, so the true share of boards lies between the two. Drawn with a fixed seed: "
+            f"{DISTRIBUTIONS}."
             if a.glide
             else "",
         ),
@@ -102,7 +104,7 @@ def accuracy_tables(job: Job) -> tuple[Table, ...]:
     Returns
     -------
     tuple of Table
-        Sums, scale terms, offset terms.
+        Sums, offset over temperature, the largest terms, then all terms of scale, offset and drift.
     """
     a = job.analyses.accuracy
 
@@ -136,22 +138,68 @@ def accuracy_tables(job: Job) -> tuple[Table, ...]:
                 left(a.offset_worst, a.offset_budget),
             ),
         ),
-        note=f"At {a.hot:g} °C the offset is up to {quantity(a.offset_hot, 'voltage')}. An offset can be "
-        "tuned out; a scale error cannot.",
+        note="An offset can be tuned out; a scale error cannot.",
     )
-    made = [sums]
-    for kind, show in (("scale", scale), ("offset", volts)):
-        terms = sorted((t for t in a.terms if t.kind == kind), key=lambda t: (-t.worst, t.name))
+    made = [sums, _over_temperature(job), *_largest(job, {"scale": scale, "offset": volts, "drift": volts})]
+    headings = {
+        "scale": "Scale terms, worst first",
+        "offset": "Offset terms at 25 °C, worst first",
+        "drift": f"What moves the offset between {a.cold:g} °C and {a.hot:g} °C, worst first",
+    }
+    for kind, show in (("scale", scale), ("offset", volts), ("drift", volts)):
+        held = a.drift if kind == "drift" else tuple(t for t in a.terms if t.kind == kind)
+        terms = sorted(held, key=lambda t: (-t.worst, t.name))
         rows = [(t.name, show(t.worst), t.formula, t.source, t.remedy or NOTHING) for t in terms]
         if rows:
             made.append(
-                Table(
-                    f"{kind.capitalize()} terms, worst first",
-                    columns("!Term", "#Worst", "Formula", "From", "What would help"),
-                    tuple(rows),
-                )
+                Table(headings[kind], columns("!Term", "#Worst", "Formula", "From", "What would help"), tuple(rows))
             )
     return tuple(made)
+
+
+def _over_temperature(job: Job) -> Table:
+    """The offset at both ends of the span of temperatures, and what it moves by between them."""
+    a = job.analyses.accuracy
+    rows = [
+        (f"Offset at {a.cold:g} °C", quantity(a.offset_cold, "voltage"), NOTHING),
+        ("Offset at 25 °C", quantity(a.offset_worst, "voltage"), quantity(a.offset_rss, "voltage")),
+        (f"Offset at {a.hot:g} °C", quantity(a.offset_hot, "voltage"), NOTHING),
+        (
+            f"Drift from {a.cold:g} °C to {a.hot:g} °C",
+            quantity(a.drift_worst, "voltage"),
+            quantity(a.drift_rss, "voltage"),
+        ),
+    ]
+    return Table(
+        "Offset over the temperatures of the specification",
+        columns("!Figure", "#Worst case", "#Root sum of squares"),
+        tuple(rows),
+        note="The budgets are judged at 25 °C. Drift is what remains of an offset that has been tuned out; at 1 V per "
+        f"octave the worst case of it is {quantity(a.drift_worst, 'pitch')}.",
+    )
+
+
+def _largest(job: Job, shown: Mapping[str, Callable[[float], str | Cell]]) -> list[Table]:
+    """The term of each kind that costs most, and what would reduce it."""
+    a = job.analyses.accuracy
+    found = (
+        ("scale", a.largest_scale, a.scale_worst),
+        ("offset", a.largest_offset, a.offset_worst),
+        ("drift", a.largest_drift, a.drift_worst),
+    )
+    rows = [
+        (
+            kind.capitalize(),
+            term.name,
+            shown[kind](term.worst),
+            percent(term.worst / whole) if whole > 0 else NOTHING,
+            term.remedy or NOTHING,
+        )
+        for kind, term, whole in found
+        if term is not None
+    ]
+    heads = columns("!Error", "Largest term", "#Worst", "#Of the sum", "What would reduce it")
+    return [Table("The largest term of each", heads, tuple(rows))] if rows else []
 
 
 def headroom_table(job: Job) -> Table:

@@ -91,7 +91,7 @@ class Context:
     board: Board
     spec: Spec | None = None
     #: (level, text) of the circuit library's own check
-    library_messages: tuple[tuple[str, str], ...] = field(default=())
+    library_messages: tuple[tuple[str, str], ...] | None = None
     #: every rule name there is
     known_rules: tuple[str, ...] = field(default=())
     #: only for rules that run last: what the others found, and which of them ran
@@ -113,6 +113,7 @@ class Rule:
     needs_spec: ClassVar[bool] = False
     #: whether it makes sense only where 0 V and the rails bear the names that the netlist conventions give them
     needs_rails: ClassVar[bool] = True
+    needs_library: ClassVar[bool] = False  # the circuit library's own check
     runs_last: ClassVar[bool] = False  # looks at what the other rules found
 
     def __init_subclass__(cls) -> None:

@@ -26,6 +26,7 @@ from modgen.spec.model import Spec, Waiver
 SUBJECTS = ("wiring", "supply", "ratings", "signal", "function", "ordering")
 
 NO_SPEC = "needs the spec, and none was given"
+NO_LIBRARY = "the circuit library checks a circuit while it builds it, not a file"
 
 
 @dataclass(frozen=True)
@@ -204,6 +205,9 @@ def judge(
             continue
         if rule.needs_rails and without_rails:
             checked[rule.name] = Checked(rule.name, 0, None, "", judged=False, not_judged=without_rails)
+            continue
+        if rule.needs_library and context.library_messages is None:
+            checked[rule.name] = Checked(rule.name, 0, None, "", judged=False, not_judged=NO_LIBRARY)
             continue
         seen = replace(context, findings=tuple(findings), ran=tuple(ran)) if rule.runs_last else context
         try:

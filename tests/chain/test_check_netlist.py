@@ -26,6 +26,11 @@ def test_our_own_netlist_is_judged_as_the_build_was(netlist: Path, tmp_path: Pat
     # the library that checked the build never saw this file
     same = [c for c in report.checked if c.rule != "library-erc"]
     assert same == [c for c in built.checked if c.rule != "library-erc"]
+    (library,) = (c for c in report.checked if c.rule == "library-erc")
+    assert (library.judged, library.not_judged) == (
+        False,
+        "the circuit library checks a circuit while it builds it, not a file",
+    )
 
 
 def test_a_reversed_diode_is_found(netlist: Path, modgen: Callable) -> None:

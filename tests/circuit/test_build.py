@@ -57,7 +57,7 @@ def test_the_good_designs_leave_the_library_nothing_to_say(built: Built) -> None
 
 
 def test_the_text_read_again_is_the_same_netlist(built: Built) -> None:
-    assert parse_netlist(built.netlist_text) == replace(built.netlist, library_messages=())
+    assert parse_netlist(built.netlist_text) == replace(built.netlist, library_messages=None)
 
 
 def test_whole_parts(built_two: Built) -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -81,7 +82,8 @@ SPECS = {
 
 def said(path, catalogue) -> list[str]:
     spec = read_spec(path)
-    netlist = plan_of(make_design(spec, catalogue), {}).netlist
+    # the circuit library has its say in tests/circuit; here it is taken to have found nothing
+    netlist = replace(plan_of(make_design(spec, catalogue), {}).netlist, library_messages=())
     report = judge(netlist, catalogue, spec)
     assert all(checked.judged for checked in report.checked)
     return [f"{f.level} {f.rule} {list(f.parts)}: {f.message}" for f in report.findings]

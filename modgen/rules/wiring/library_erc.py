@@ -35,18 +35,20 @@ class LibraryErc(Rule):
     name = "library-erc"
     subject = "wiring"
     needs_rails = False
+    needs_library = True
 
     def measure(self, context: Context) -> Iterator[Measurement]:
         """Every message, and every part and net without one."""
+        messages = context.library_messages or ()
         known = {part.ref for part in context.board.netlist.parts}
-        said = " ".join(text for _, text in context.library_messages)
+        said = " ".join(text for _, text in messages)
         for ref in context.board.refs:
             if not re.search(rf"\b{re.escape(ref)}\b", said):
                 yield Measurement(parts=(ref,), what=f"{ref}: no message")
         for net in context.board.netlist.nets:
             if not re.search(rf"(?<!\S){re.escape(net.name)}(?!\w)", said):
                 yield Measurement(parts=(), what=f"net {net.name}: no message", nets=(net.name,))
-        for level, text in context.library_messages:
+        for level, text in messages:
             parts = tuple(sorted(set(re.findall(r"\b[A-Z]+[0-9]+\b", text)) & known))
             yield Measurement(
                 parts=parts,

@@ -181,3 +181,31 @@ def test_span_off_0v_still_meets_0v_when_unplugged(refused: Callable) -> None:
         "build: {amplifier: TL07x}",
     )
     assert problem.why == "TL07x: the input range at 0 V is 4 V short behind 1n5819"
+
+
+WIDE = ("rails: {positive: 18 V, negative: -18 V}", "signal: {span: ±11 V}", "build: {mount: surface}")
+
+
+def test_a_step_beyond_a_controls_rating_takes_another_control(catalogue: Catalogue, spec_of: Callable) -> None:
+    """22 V across a 20 V control: the 9 mm families are passed over."""
+    control = make_design(spec_of(*WIDE), catalogue).values.control
+    assert control.voltage >= 22
+    assert control.family != "control-9mm"
+
+
+def test_a_step_beyond_every_controls_rating(catalogue: Catalogue, spec_of: Callable) -> None:
+    small = Catalogue({k: p for k, p in catalogue.parts.items() if p.kind != "control" or p.family == "control-9mm"})
+    with pytest.raises(InputError) as error:
+        make_design(spec_of(*WIDE), small)
+    (problem,) = error.value.problems
+    assert problem.what == "no control can be used"
+    assert problem.why == "a step over the whole span puts 22 V across the control; the best is rated 20 V"
+
+
+def test_a_switch_is_offered_where_it_helps_and_only_there(
+    refused: Callable, catalogue: Catalogue, spec_of: Callable
+) -> None:
+    offer = "or have a panel switch for two ranges, glide: {ranges: 2}"
+    assert refused("glide: {shortest: 1 ms, longest: 12 s, cover: worst-case}").fix.endswith(offer)
+    assert make_design(spec_of("glide: {shortest: 1 ms, longest: 12 s, cover: worst-case, ranges: 2}"), catalogue)
+    assert offer not in refused("glide: {shortest: 5 ms, longest: 900 s}").fix

@@ -17,7 +17,16 @@ from modgen.spec.model import Spec
 
 TOP = Path(__file__).resolve().parent.parent
 README = TOP / "README.md"
-FILES = ("netlist.net", "circuit.cir", "design.json", "bom.xlsx", "bom.csv", "assembly.html", "review.html")
+FILES = (
+    "netlist.net",
+    "circuit.cir",
+    "design.json",
+    "bom.xlsx",
+    "bom.csv",
+    "assembly.html",
+    "review.html",
+    "review.sarif",
+)
 
 
 def rows(model: type, before: str = "") -> Iterator[tuple[str, str, str]]:

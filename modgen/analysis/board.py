@@ -14,7 +14,8 @@ from typing import Protocol
 
 from modgen.analysis.lanes import Lane, find_lanes
 from modgen.analysis.model import Interval
-from modgen.analysis.parts import Contact, Jack, Neighbour, Section, field_number, reference_order
+from modgen.analysis.parts import POSITIONS, Contact, Jack, Neighbour, Section, field_number, reference_order
+from modgen.analysis.rails import named_rails
 from modgen.catalogue.records import Amplifier, Capacitor
 from modgen.catalogue.records import Part as Record
 from modgen.formulas.loading import parallel
@@ -32,8 +33,6 @@ _QUANTITIES = {
     "capacitor": ("capacitance", "100n"),
 }
 _CLASSES = {"R": "resistor", "C": "capacitor", "D": "diode", "U": "amplifier", "J": "header", "S": "switch"}
-#: positions of a panel switch and the throw that is then joined to the common pin 2
-POSITIONS = {"1-2": "1", "2-3": "3"}
 
 
 class Records(Protocol):
@@ -65,13 +64,14 @@ class Board:
         Returns
         -------
         Board
-            The same circuit; parts without a record are in :attr:`unknown`.
+            The same circuit; parts without a record are in :attr:`unknown`. Supply nets that go under names of their
+            own have the usual ones, where it is plain which is which (:mod:`modgen.analysis.rails`).
         """
         found = []
         for part in netlist.parts:
             key = part.field("part")
             found.append((part.ref, catalogue.get(key) if key else None))
-        return cls(netlist, tuple(found))
+        return cls(named_rails(netlist, found), tuple(found))
 
     # --- parts -----------------------------------------------------------------------------------
 

@@ -11,14 +11,10 @@ from collections import deque
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
-from modgen.analysis.parts import Section, reference_order
+from modgen.analysis.parts import POSITIONS, Section, reference_order
 
 if TYPE_CHECKING:
     from modgen.analysis.board import Board
-
-
-#: positions of a switch
-POSITIONS = ("1-2", "2-3")
 
 
 @dataclass(frozen=True)

@@ -46,6 +46,10 @@ class Jack:
     sleeve: str | None
 
 
+#: positions of a panel switch, each with the throw that it joins to the common pin 2
+POSITIONS = {"1-2": "1", "2-3": "3"}
+
+
 @dataclass(frozen=True)
 class Contact:
     """A contact of a panel switch: closed in one position, ``1-2`` or ``2-3``, where it joins two nets."""

@@ -89,7 +89,7 @@ def _first(board: Board, lane: Lane) -> Stability:
         "input buffer",
         lane,
         lane.first,
-        (*lane.isolating, lane.control, *lane.capacitors),
+        (*lane.isolating, lane.control, *(ref for branch in lane.branches for ref in branch.refs)),
         _worst_loaded(_amp(lane.first), branches),
     )
 

@@ -14,8 +14,9 @@ from modgen.analysis import analyse
 from modgen.catalogue import Catalogue, PriceBreak, load_catalogue, read_prices, read_stock
 from modgen.chain.land_patterns import read_land_patterns
 from modgen.circuit import build
+from modgen.circuit.plan import plan_of
 from modgen.design import make_design
-from modgen.netlist import read_netlist
+from modgen.netlist import Netlist, read_netlist
 from modgen.outputs import pack_files
 from modgen.outputs.model import Job
 from modgen.outputs.pack import write_pack
@@ -83,7 +84,7 @@ def run(path: str | Path, progress: Progress = _silent) -> Job:
     built = build(design, names)
     progress("checking")
     analyses = analyse(built.netlist, catalogue, spec)
-    report = judge(built.netlist, catalogue, spec)
+    report = judge(built.netlist, catalogue, spec, intended=plan_of(design, names).netlist)
     return Job(spec, catalogue, design, built.netlist, built.netlist_text, analyses, report, stock)
 
 
@@ -99,28 +100,40 @@ def write(job: Job, out: str | Path, progress: Progress = _silent) -> Path:
     return write_pack(job, Path(out), pack_files(job))
 
 
-def check_netlist(path: str | Path, netlist: str | Path) -> tuple[Spec, Report]:
-    """Judge a netlist file against the rules and a spec.
+def check_netlist(path: str | Path | None, netlist: str | Path) -> tuple[Spec | None, Report]:
+    """Judge a netlist file by the rules, and by a spec where there is one: then it is compared with the spec's own.
+
+    Parameters
+    ----------
+    path : str, Path or None
+        The spec; without one the rules that need no intent run, and the shipped catalogue says what the parts are. [-]
+    netlist : str or Path
+        The netlist. [-]
 
     Raises
     ------
     InputError
-        The spec or the netlist cannot be read; problems of both are given together.
+        The spec or the netlist cannot be read, or the spec cannot be met; problems of both are given together.
+    modgen.rules.InternalError
+        A rule crashed.
     """
     problems: list[Problem] = []
-    read = None
-    try:
+    read: Netlist | None = None
+    spec: Spec | None = None
+    intended: Netlist | None = None
+    catalogue: Catalogue | None = None
+    with _collecting(problems):
         read = read_netlist(Path(netlist))
-    except InputError as error:
-        problems += error.problems
-    try:
-        spec = read_spec(Path(path))
-        catalogue = catalogue_of(spec)
-    except InputError as error:
-        raise InputError([*problems, *error.problems]) from error
-    if read is None:
+    with _collecting(problems):
+        if path is None:
+            catalogue = load_catalogue()
+        else:
+            spec = read_spec(Path(path))
+            catalogue = catalogue_of(spec)
+            intended = plan_of(make_design(spec, catalogue), {}).netlist
+    if read is None or catalogue is None or problems:
         raise InputError(problems)
-    return spec, judge(read, catalogue, spec)
+    return spec, judge(read, catalogue, spec, intended=intended)
 
 
 def _files(spec: Spec) -> tuple[Catalogue, Mapping[str, str], Mapping[str, int]]:

@@ -14,8 +14,8 @@ import sys
 import traceback
 from collections.abc import Sequence
 
-from modgen import __version__
 from modgen.problems import InputError
+from modgen.version import __version__
 
 CLEAN, FINDINGS, UNUSABLE, INTERNAL = 0, 1, 2, 3
 
@@ -46,9 +46,9 @@ def parser() -> argparse.ArgumentParser:
     build.add_argument("--out", default="output", metavar="DIR", help="where the packs go (default: %(default)s)")
 
     check = command("check", "judge a module, or a netlist that came back from layout; write nothing")
-    check.add_argument("spec", metavar="SPEC", help="a spec (YAML)")
+    check.add_argument("spec", nargs="?", metavar="SPEC", help="a spec (YAML); may be left out with --netlist")
     check.add_argument("--netlist", metavar="FILE", help="judge this netlist instead of the one modgen makes")
-    check.add_argument("--format", choices=("text", "json"), default="text", help="default: %(default)s")
+    check.add_argument("--format", choices=("text", "json", "sarif"), default="text", help="default: %(default)s")
 
     start = command("start", "write a commented spec to begin from")
     start.add_argument("file", metavar="FILE", help="the new file; an existing one is left alone")

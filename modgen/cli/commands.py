@@ -72,23 +72,43 @@ def check(options: argparse.Namespace) -> int:
     from modgen.chain import check_netlist, run
     from modgen.cli.screen import report_text
 
-    progress = _Progress(options.spec)
+    if not options.spec and not options.netlist:
+        raise InputError(
+            [Problem(Place("modgen check"), "there is nothing to judge", "", "give a spec, a netlist with --netlist, or both")]
+        )
+    progress = _Progress(options.spec or options.netlist)
     try:
         if options.netlist:
-            _, report = check_netlist(options.spec, options.netlist)
+            spec, report = check_netlist(options.spec, options.netlist)
         else:
-            report = run(options.spec, progress).report
+            job = run(options.spec, progress)
+            spec, report = job.spec, job.report
     finally:
         progress.clear()
     if options.format == "json":
         from modgen.outputs.design_json import findings_json
 
         print(json.dumps(findings_json(report), indent=2, ensure_ascii=False))
+    elif options.format == "sarif":
+        from modgen.outputs.sarif import sarif_log
+
+        _print_bytes(sarif_log(report, spec, options.netlist or "", folders=True))
     else:
         print(report_text(report), end="")
-        if options.netlist:
-            print("judged by the rules; parts and connections were not compared with the spec one by one")
+        missed = [checked.rule for checked in report.checked if not checked.judged]
+        if not options.spec:
+            print(f"no spec was given; {len(missed)} rules were not judged: {', '.join(missed)}")
     return CLEAN if report.cleared else FINDINGS
+
+
+def _print_bytes(content: bytes) -> None:
+    """Write a file's content to standard output as it is, whatever code page a redirected output has."""
+    raw = getattr(sys.stdout, "buffer", None)
+    if raw is None:
+        sys.stdout.write(content.decode("utf-8"))
+        return
+    sys.stdout.flush()
+    raw.write(content)
 
 
 def start(options: argparse.Namespace) -> int:

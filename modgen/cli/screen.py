@@ -20,6 +20,9 @@ _ROLES = (
     "isolating",
     "glide-control",
     "glide-capacitor",
+    "range-switch",
+    "range-capacitor",
+    "range-keeper",
     "output-series",
     "feedback",
     "compensation",
@@ -91,6 +94,11 @@ def _glide(job: Job) -> list[str]:
         name = f"channels {_runs([c.channel for c in channels])}" if len(by_values) > 1 else "every channel"
         lines += [
             f"  {name}: fast end {_spread(shortest)}, slow end {_spread(longest)}",
+            *(
+                f"  {' ' * len(name)}  {r.name} range (pins {r.position}): {_time(r.shortest.nominal)} to "
+                f"{_time(r.longest.nominal)}"
+                for r in channels[0].ranges
+            ),
             f"  {' ' * len(name)}  {_share(inside)} of such channels cover what is asked",
         ]
     return [*lines, f"  {_share(job.analyses.boards_inside)} of boards cover it on every channel"]

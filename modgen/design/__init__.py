@@ -44,7 +44,7 @@ def make_design(spec: Spec, catalogue: Catalogue) -> Design:
     values = _values(spec, catalogue, outcome)
     jack = _cheapest(spec, catalogue, Jack)
     header = _cheapest(spec, catalogue, Header)
-    decided = choices(spec, outcome, values)
+    decided = choices(spec, outcome, values, catalogue)
     parts = place(spec, values, jack, header, role_reasons(decided))
     return Design(spec.module, spec.channels, values, parts, decided)
 

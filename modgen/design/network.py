@@ -150,6 +150,8 @@ class Grid:
             self.shortest, self.longest = fast * (r + end), c * (r + track)
             fast_longest, slow_shortest = fast * (r + track), c * (r + end)
 
+        # nothing may be missing between the two ranges of a switch
+        self._meets = fast_longest >= slow_shortest
         signal = max(abs(spec.signal.low), abs(spec.signal.high))
         self._insulation = axis([a.insulation(signal) for a in self.caps], 0)
         self._leakage = axis([a.leakage(signal) for a in self.caps], 0)
@@ -157,8 +159,7 @@ class Grid:
         inside = (
             (self.shortest <= spec.glide.shortest * (1 + 1e-9))
             & (self.longest >= spec.glide.longest * (1 - 1e-9))
-            # nothing may be missing between the two ranges of a switch
-            & (fast_longest >= slow_shortest)
+            & self._meets
         )
         self.index = np.argwhere(inside)
         i, j, k = self.index.T
@@ -194,7 +195,7 @@ class Grid:
             _ranks([x.key for x in self.resistors])[k],
         )
 
-    def ranked(self, room: Room, most: int = 40) -> list[Network]:
+    def ranked(self, room: Room, most: int = 400) -> list[Network]:
         """The best combinations whose errors fit what is left of the budgets, best first.
 
         Order: insulating dielectrics before leaking ones; little bias through the control before much; one part
@@ -258,7 +259,7 @@ class Grid:
         scale = self.resistance / (self.resistance + self._insulation)
         offset = self.resistance * (self._leakage + room.bias)
         driven = self._isolating >= room.isolating * (1 - 1e-9)
-        within = (scale <= room.scale) & (offset <= room.offset) & driven
+        within = (scale <= room.scale) & (offset <= room.offset) & driven & self._meets
         quick = within & (self.shortest <= self.spec.glide.shortest)
         slow = within & (self.longest >= self.spec.glide.longest)
         return Reach(
@@ -266,6 +267,34 @@ class Grid:
             longest=float(np.max(self.longest[quick])) if quick.any() else 0.0,
             shortest=float(np.min(self.shortest[slow])) if slow.any() else math.inf,
         )
+
+
+def meeting(spec: Spec, capacitor: Arrangement, control: Control, isolating: Resistor) -> tuple[float, float]:
+    """Where the ranges of a switch meet: the longest glide of the fast one, the shortest of the slow one.
+
+    Parameters
+    ----------
+    spec
+        How a glide is measured and whether tolerances count.
+    capacitor, control, isolating
+        The network, its capacitor a switched one.
+
+    Returns
+    -------
+    tuple of float
+        Nominal, or each at its worst [s]; there is no gap as long as the first is not below the second.
+    """
+    factor = float(time_factor(spec.glide.measure, spec.glide.step, spec.glide.within))
+    sign = 1.0 if spec.glide.cover == "worst-case" else 0.0
+    end = control.end_high if sign else control.end
+    low = isolating.resistance * (1 - sign * isolating.tolerance)
+    low += control.resistance * (1 - sign * control.tolerance)
+    high = isolating.resistance * (1 + sign * isolating.tolerance) + end
+    fast = capacitor.fast
+    return (
+        factor * fast.capacitance * (1 - sign * fast.tolerance) * low,
+        factor * capacitor.capacitance * (1 + sign * capacitor.tolerance) * high,
+    )
 
 
 def in_steps(cost: Numeric, error: Numeric, area: Numeric) -> tuple[Numeric, Numeric, Numeric]:

@@ -2,10 +2,15 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
+from modgen.catalogue import Catalogue
 from modgen.design import practice
 from modgen.design.choose import Candidate, Outcome
 from modgen.design.model import Choice, Values
-from modgen.design.network import Network
+from modgen.design.network import meeting
+from modgen.design.runners_up import MOST, least_compensation, network_lost, runners_up
+from modgen.design.shelf_neighbours import whose_prices
 from modgen.design.stage import loading_paths
 from modgen.design.supply import Ends, reverse_stress
 from modgen.formulas.amplifier import clamp_current, short_power
@@ -16,11 +21,13 @@ from modgen.units import format_quantity as text
 _ORDER = {"cost": "the least cost", "accuracy": "the least error", "size": "the least board area"}
 
 
-def choices(spec: Spec, outcome: Outcome, values: Values) -> tuple[Choice, ...]:
-    """Every decision of a design, with its reason."""
+def choices(spec: Spec, outcome: Outcome, values: Values, catalogue: Catalogue) -> tuple[Choice, ...]:
+    """Every decision of a design, with its reason and what lost."""
     made = [_amplifier(spec, outcome, values), *_network(spec, outcome), _terminator(spec, values)]
     made += [_input_series(spec, outcome, values), *_output(spec, values), *_supply(spec, outcome, values)]
-    return tuple(made)
+    made += _ranges(spec, outcome, values)
+    lost = runners_up(spec, catalogue, outcome, values)
+    return tuple(replace(c, runners_up=lost[c.subject]) if c.subject in lost else c for c in made)
 
 
 def role_reasons(made: tuple[Choice, ...]) -> dict[str, str]:
@@ -56,21 +63,14 @@ def _lost(spec: Spec, best: Candidate, other: Candidate) -> str:
     if other.stage.output.hot and not best.stage.output.hot:
         return f"draws more than {text(practice.MOST_SHORT, 'current')} when an output is shorted"
     if spec.build.prefer == "cost" and other.cost > best.cost:
-        return f"costs {other.cost / best.cost - 1:.1%} more for the board at {_prices(spec)}"
+        return f"costs {other.cost / best.cost - 1:.1%} more for the board at {whose_prices(spec)}"
     if spec.build.prefer == "size" and other.area > best.area:
         return f"takes {other.area / best.area - 1:.1%} more area"
     if spec.build.prefer == "size" and other.cost > best.cost:
-        return f"takes as much area and costs {other.cost / best.cost - 1:.1%} more at {_prices(spec)}"
+        return f"takes as much area and costs {other.cost / best.cost - 1:.1%} more at {whose_prices(spec)}"
     if other.error > best.error:
         return f"{1200 * other.error:.3g} instead of {1200 * best.error:.3g} cents of error, worst case"
     return "equal in what was asked; it comes later by name"
-
-
-def _prices(spec: Spec) -> str:
-    """Whose prices a comparison stands on."""
-    if spec.order.prices:
-        return "your own prices, and the catalogue's invented ones where you give none"
-    return "the catalogue's invented prices"
 
 
 def _network(spec: Spec, outcome: Outcome) -> list[Choice]:
@@ -78,10 +78,14 @@ def _network(spec: Spec, outcome: Outcome) -> list[Choice]:
     glide = spec.glide
     worst = "worst case" if glide.cover == "worst-case" else "nominal"
     lost: list[tuple[str, str]] = []
+    # of one pair of capacitor and control the best isolating resistor stands for all
+    seen = [(best.capacitor, best.control)]
     for other in outcome.networks:
-        pair = f"{' beside '.join(other.capacitor.key)} with {other.control.key} and {other.isolating.key}"
-        if (other.capacitor, other.control) != (best.capacitor, best.control) and len(lost) < 2:
-            lost.append((pair, _network_lost(spec, best, other)))
+        pair = (other.capacitor, other.control)
+        if pair not in seen and len(lost) < MOST:
+            seen.append(pair)
+            named = f"{' beside '.join(other.capacitor.key)} with {other.control.key} and {other.isolating.key}"
+            lost.append((named, network_lost(spec, best, other)))
     lost += list(outcome.dielectrics)
     first, *beside = best.capacitor.key
     how = " and, switched in, " if best.capacitor.switched else " beside "
@@ -117,18 +121,38 @@ def _network(spec: Spec, outcome: Outcome) -> list[Choice]:
     ]
 
 
-def _network_lost(spec: Spec, best: Network, other: Network) -> str:
-    if other.leaky and not best.leaky:
-        return "its leakage is an offset"
-    if other.oversized and not best.oversized:
-        return f"reaches {text(other.longest, 'time')}: most of the travel would lie beyond what is asked"
-    if spec.build.prefer == "cost" and other.cost > best.cost + 1e-9:
-        return f"costs {other.cost - best.cost:.2f} more a channel at {_prices(spec)}"
-    if spec.build.prefer == "size" and other.area > best.area:
-        return f"takes {(other.area - best.area) * 1e6:.0f} mm2 more a channel"
-    if other.scale > best.scale:
-        return f"insulation costs {1200 * other.scale:.3g} instead of {1200 * best.scale:.3g} cents per octave"
-    return f"fits the range less closely ({text(other.shortest, 'time')} to {text(other.longest, 'time')})"
+def _ranges(spec: Spec, outcome: Outcome, values: Values) -> list[Choice]:
+    """What a range switch brings: nothing without one."""
+    added, switch, keeper = values.range_capacitor, values.range_switch, values.range_keeper
+    if added is None or switch is None or keeper is None:
+        return []
+    network = outcome.best.network
+    fast_longest, slow_shortest = meeting(spec, network.capacitor, network.control, network.isolating)
+    step = spec.signal.high - spec.signal.low
+    return [
+        Choice(
+            "range-capacitor",
+            added.key,
+            f"switched in beside {values.glide.key} for the slow range, which begins at {text(slow_shortest, 'time')}; "
+            f"the fast range ends at {text(fast_longest, 'time')}, so that nothing is missing between them",
+            "the overlap of the ranges",
+            1 - slow_shortest / fast_longest,
+        ),
+        Choice(
+            "range-switch",
+            switch.key,
+            f"asked for by glide.ranges; a step over the whole span puts {text(step, 'voltage')} across its open "
+            f"contact, rated {text(switch.voltage, 'voltage')}",
+            "the contact's voltage",
+            1 - step / switch.voltage,
+        ),
+        Choice(
+            "range-keeper",
+            keeper.key,
+            "keeps the waiting capacitor at the output's voltage, so that the slow range begins without a jump; it "
+            f"follows within {text(keeper.resistance * added.capacitance, 'time')} (time constant)",
+        ),
+    ]
 
 
 def _terminator(spec: Spec, values: Values) -> Choice:
@@ -181,7 +205,14 @@ def _output(spec: Spec, values: Values) -> list[Choice]:
             "power with the output shorted",
             share,
         ),
-        Choice("feedback", values.feedback.key, "takes the feedback from the jack, behind the output resistor"),
+        Choice(
+            "feedback",
+            values.feedback.key,
+            "takes the feedback from the jack, behind the output resistor, and keeps a powered neighbour out of the "
+            "inverting input",
+            "the largest resistance of a feedback path",
+            1 - values.feedback.resistance / practice.MOST_SERIES,
+        ),
         Choice(
             "compensation",
             values.compensation.key,
@@ -189,6 +220,8 @@ def _output(spec: Spec, values: Values) -> list[Choice]:
             f"{text(practice.CABLE_CAPACITANCE, 'capacitance')} of cable: with the "
             f"feedback resistor at least {practice.COMPENSATION_FACTOR:.0f} times the time constant "
             "of output resistor and cable",
+            "stability with a cable",
+            values.compensation.capacitance / least_compensation(values) - 1,
         ),
     ]
 

@@ -8,6 +8,7 @@ from modgen.outputs.assembly import assembly_html
 from modgen.outputs.design_json import design_json
 from modgen.outputs.model import Job
 from modgen.outputs.review import review_html
+from modgen.outputs.sarif import sarif_log
 from modgen.outputs.spice import spice_deck
 from modgen.outputs.table_csv import write_bom_csv
 from modgen.outputs.workbook import write_bom_xlsx
@@ -25,4 +26,5 @@ def pack_files(job: Job) -> Mapping[str, bytes]:
         "bom.csv": write_bom_csv(job),
         "assembly.html": assembly_html(job),
         "review.html": review_html(job),
+        "review.sarif": sarif_log(job.report, job.spec),
     }

@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 from modgen.catalogue.records import Capacitor, Control
 from modgen.outputs import benchtest, bringup
-from modgen.outputs.boardfacts import rail_net, records_of, soldered_flat
+from modgen.outputs.boardfacts import rail_net, range_words, records_of, soldered_flat
 from modgen.outputs.faultfinding import fault_table
 from modgen.outputs.pages import render
 from modgen.outputs.steps import step_table, steps
@@ -130,6 +130,7 @@ def assembly_html(job: Job) -> bytes:
         "paths": benchtest.path_table(job),
         "offset": benchtest.offset_words(job),
         "glide": benchtest.glide_table(job),
+        "ranges": range_words(job),
         "measure": benchtest.measure_words(job),
         "wave": benchtest.wave_levels(job),
         "hold": benchtest.hold_time(job),

@@ -11,6 +11,9 @@ from modgen.outputs.pages import BLANK, TICK, Table, columns
 from modgen.outputs.wording import NOTHING, percent, quantity, short_ranges, signed
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+    from modgen.analysis.model import ChannelGlide, RangeGlide
     from modgen.outputs.model import Job
 
 #: Time constants after which a step is over for the eye: e**-5 is 0.7 %. [-]
@@ -197,14 +200,19 @@ def glide_table(job: Job) -> Table:
     Returns
     -------
     Table
-        One row a channel and position of the control.
+        One row a channel and position of the control; with a range switch in each of its ranges.
     """
     rows = []
     for channel in job.analyses.glide:
+        ranges: Sequence[tuple[str, ChannelGlide | RangeGlide]] = [(f"{r.name} range, ", r) for r in channel.ranges]
         for where, interval in (
-            ("fully anticlockwise", channel.shortest),
-            ("middle", channel.middle),
-            ("fully clockwise", channel.longest),
+            (before + position, interval)
+            for before, times in ranges or [("", channel)]
+            for position, interval in (
+                ("fully anticlockwise", times.shortest),
+                ("middle", times.middle),
+                ("fully clockwise", times.longest),
+            )
         ):
             rows.append(
                 (

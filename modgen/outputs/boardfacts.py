@@ -55,6 +55,31 @@ def by_role(netlist: Netlist) -> dict[str, tuple[str, ...]]:
     return {role: tuple(refs) for role, refs in roles.items()}
 
 
+def range_words(job: Job) -> str:
+    """Which position of the range switches is slow, in a sentence.
+
+    Parameters
+    ----------
+    job
+        The module. [-]
+
+    Returns
+    -------
+    str
+        ``The slow range is with pins 1 and 2 joined, the fast one with pins 2 and 3.``; empty without a range switch.
+    """
+    found: dict[tuple[str, ...], list[str]] = {}
+    for glide in job.analyses.glide:
+        if glide.ranges:
+            found.setdefault(tuple(r.position for r in glide.ranges), []).append(str(glide.channel))
+    texts = []
+    for positions, channels in found.items():
+        fast, slow = (" and ".join(position.split("-")) for position in positions)
+        whose = f" of channel {', '.join(channels)}" if len(found) > 1 else ""
+        texts.append(f"The slow range{whose} is with pins {slow} joined, the fast one with pins {fast}.")
+    return " ".join(texts)
+
+
 def on_net(netlist: Netlist, net: str) -> tuple[tuple[str, str], ...]:
     """Pins on a net; none when there is no such net.
 

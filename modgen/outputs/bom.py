@@ -20,6 +20,7 @@ from modgen.catalogue.records import (
     Jack,
     PriceBreak,
     Resistor,
+    Switch,
 )
 from modgen.catalogue.records import Part as Record
 from modgen.netlist.model import Netlist, Part
@@ -354,6 +355,6 @@ def _rating(record: Record) -> str:
         return f"{format_quantity(reverse, 'voltage')}, {format_quantity(forward, 'current')}"
     if isinstance(record, Amplifier):
         return f"supply {format_quantity(record.supply_absolute, 'voltage')} in all at most"
-    if isinstance(record, Jack | Header):
+    if isinstance(record, Jack | Switch | Header):
         return f"{format_quantity(record.voltage, 'voltage')}, {format_quantity(record.current, 'current')}"
     return ""

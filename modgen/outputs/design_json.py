@@ -11,7 +11,7 @@ import math
 from collections.abc import Mapping
 from typing import TYPE_CHECKING, Any
 
-from modgen.outputs.analyses_json import accuracy_json, analyses_json
+from modgen.outputs.analyses_json import accuracy_json, analyses_json, record
 from modgen.spec import resolved
 
 if TYPE_CHECKING:
@@ -40,7 +40,9 @@ def design_json(job: Job) -> bytes:
     Notes
     -----
     ``channels[].inside`` is the share of such channels whose control covers the asked range, ``boards_inside`` the
-    share of boards on which every channel does; each with its 95 % interval. Voltages of ``rails`` carry their
+    share of boards on which every channel does; each with its 95 % interval. With a range switch ``shortest`` is of
+    the fast range, ``middle`` and ``longest`` are of the slow one, and ``ranges`` has all of both; else it is empty.
+    Voltages of ``rails`` carry their
     sign and are named by magnitude: ``least`` and ``greatest`` of a negative rail are -11.4 V and -12.6 V. All
     other pairs of ``low`` and ``high`` are in order of value.
     """
@@ -138,6 +140,7 @@ def _channels(analyses: Analyses) -> list[dict[str, Any]]:
                 "high": glide.inside_high,
                 "boards": glide.boards,
             },
+            "ranges": [record(times) for times in glide.ranges],
         }
         for glide in analyses.glide
     ]

@@ -125,6 +125,26 @@ def _glide(job: Job) -> list[tuple[str, str, str]]:
         ("The control works backwards", "the control's outer pins exchanged (1 is the buffer's side)", control),
         ("The output follows at once at every setting", "the glide capacitor is open, or its end to 0 V", capacitor),
     ]
+    if "range-switch" in refs:
+        switch, added, keeper = (refs.get(role, "") for role in ("range-switch", "range-capacitor", "range-keeper"))
+        rows += [
+            (
+                "Glide is right in the fast range and out in the slow one",
+                "an added capacitor of the wrong value",
+                added,
+            ),
+            (
+                "Both ranges glide alike, and fast",
+                "an added capacitor or its contact open",
+                f"{added}, {switch}",
+            ),
+            ("Fast and slow are exchanged", "the switch turned round (its outer pins exchanged)", switch),
+            (
+                "The output jumps when the slow range is chosen",
+                "its resistor or a contact of the switch is open, so that nothing keeps the waiting capacitor",
+                f"{keeper}, {switch}",
+            ),
+        ]
     if job.design.values.back_to_back:
         rows.append(
             (

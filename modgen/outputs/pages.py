@@ -13,7 +13,7 @@ from typing import TYPE_CHECKING
 
 from modgen.outputs.wording import (
     NOTHING,
-    number_words,
+    channel_words,
     percent,
     plural,
     prose,
@@ -66,12 +66,16 @@ class Column:
 
 @dataclass(frozen=True)
 class Table:
-    """A table with its caption; every row has as many cells as there are columns."""
+    """A table with its caption; every row has as many cells as there are columns.
+
+    A ``narrow`` one stays a table on a small screen, where others become a list of its rows.
+    """
 
     caption: str
     columns: tuple[Column, ...]
     rows: tuple[tuple[str | Cell, ...], ...]
     note: str = ""
+    narrow: bool = False
 
     def __post_init__(self) -> None:
         for row in self.rows:
@@ -123,12 +127,12 @@ def collapsed(
     Returns
     -------
     list of tuple
-        Numbers as ranges (words that are no numbers have to be the same), references in ranges, the cells.
+        Channels in words (what is no number has to be the same), references in ranges, the cells.
 
     Examples
     --------
     >>> collapsed([("1", ("R1",), ("a",)), ("2", ("R2",), ("b",)), ("3", ("R3",), ("a",))])
-    [('1, 3', 'R1, R3', ('a',)), ('2', 'R2', ('b',))]
+    [('channels 1, 3', 'R1, R3', ('a',)), ('channel 2', 'R2', ('b',))]
     """
     alike: dict[tuple[tuple[str | Cell, ...], str], tuple[list[str], list[str]]] = {}
     for about, refs, shown in rows:
@@ -137,7 +141,7 @@ def collapsed(
         parts.extend(refs)
     return [
         (
-            number_words(numbers) if numbers[0].isdecimal() else numbers[0],
+            channel_words(numbers) if numbers[0].isdecimal() else numbers[0],
             short_ranges(parts) or NOTHING,
             shown,
         )

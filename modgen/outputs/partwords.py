@@ -8,7 +8,7 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping, Sequence
 from types import MappingProxyType
 
-from modgen.catalogue.records import Amplifier, Capacitor, Diode, Header, Jack
+from modgen.catalogue.records import Amplifier, Capacitor, Diode, Header, Jack, Switch
 from modgen.catalogue.records import Part as Record
 from modgen.units import format_quantity
 
@@ -75,6 +75,7 @@ _PACKAGES: Mapping[str, Callable[[Record], str]] = MappingProxyType(
         # the trade's sizes are whole millimetres, and cases a little larger
         "control": lambda part: f"panel, {int(round(part.body.length * 1e3, 2))} mm",
         "jack": lambda part: f"panel, {_millimetres(part.body.length, part.body.width)}",
+        "toggle": lambda part: f"panel, {_millimetres(part.body.length, part.body.width)}",
         "header": lambda part: f"2 x {len(part.pins) // 2}, {_millimetres(part.body.pitch)}",
     }
 )
@@ -120,7 +121,7 @@ def value_words(record: Record, value: str, digits: int = 6) -> str:
     Returns
     -------
     str
-        ``4.7 kΩ``, ``TL074CN``, ``2 x 5 header``, ``3.5 mm socket``.
+        ``4.7 kΩ``, ``TL074CN``, ``2 x 5 header``, ``3.5 mm socket``, ``toggle switch, on-on``.
     """
     for name in ("resistance", "capacitance"):
         size = getattr(record, name, None)
@@ -130,6 +131,8 @@ def value_words(record: Record, value: str, digits: int = 6) -> str:
         return f"2 x {len(record.pins) // 2} header"
     if isinstance(record, Jack):
         return "3.5 mm socket"
+    if isinstance(record, Switch):
+        return "toggle switch, on-on"
     if value and value != record.key:
         return value
     if isinstance(record, Amplifier):

@@ -68,7 +68,7 @@ def short_tables(job: Job) -> tuple[Table, ...]:
         Table(
             "Outputs shorted, the amplifier driving to a rail at the high end of its tolerance",
             columns(
-                "!Channels", "Resistor", "Shorted to", "#Voltage", "#Current", "#In the resistor", "#Rated", "#Left"
+                "!Outputs of", "Resistor", "Shorted to", "#Voltage", "#Current", "#In the resistor", "#Rated", "#Left"
             ),
             tuple((channels, resistors, *shown) for channels, resistors, shown in shorts),
             note="Another output is a neighbour's at the opposite rail, behind the source impedance of the "

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Mapping
 from typing import TYPE_CHECKING
 
@@ -10,7 +11,16 @@ from modgen.analysis.montecarlo import DISTRIBUTIONS
 from modgen.outputs.benchtest import scale_words
 from modgen.outputs.marking import net_words
 from modgen.outputs.pages import Cell, Table, columns
-from modgen.outputs.wording import NOTHING, grouped, number_words, percent, quantity, short_ranges, signed
+from modgen.outputs.wording import (
+    NOTHING,
+    channel_words,
+    grouped,
+    number_words,
+    percent,
+    quantity,
+    short_ranges,
+    signed,
+)
 
 if TYPE_CHECKING:
     from modgen.outputs.model import Job
@@ -31,6 +41,8 @@ def margin_cell(margin: float | None) -> str | Cell:
     """
     if margin is None:
         return NOTHING
+    if margin == -math.inf:
+        return Cell("none", tone="stop")
     return Cell(percent(margin), tone="stop") if margin < 0 else percent(margin)
 
 
@@ -56,7 +68,7 @@ def glide_tables(job: Job) -> tuple[Table, ...]:
     Returns
     -------
     tuple of Table
-        Times, then shares.
+        Times, in every range where a switch makes two, then shares.
     """
     glide = job.spec.glide
     times: list[tuple[str, ...]] = []
@@ -71,14 +83,17 @@ def glide_tables(job: Job) -> tuple[Table, ...]:
     whole = _share(a.boards_inside, a.boards_inside_low, a.boards_inside_high)
     shares.append((f"all {len(a.glide)} of a board", *whole, NOTHING))
     asked = f"{quantity(glide.shortest, 'time')} to {quantity(glide.longest, 'time')}"
+    ranged = any(c.ranges for c in a.glide)
     return (
         Table(
-            f"Glide times ({glide.measure}); asked {asked}, {glide.cover}",
+            f"Glide times ({glide.measure}); asked {asked}, {glide.cover}"
+            + (": shortest in the fast range, middle and longest in the slow one" if ranged else ""),
             columns(
                 "!Channel", "Parts", "#Shortest", "#Worst case", "#Middle", "#Worst case", "#Longest", "#Worst case"
             ),
             tuple(times),
         ),
+        *_range_tables(job),
         Table(
             f"How many such channels, and how many whole boards, cover the whole of {asked}",
             columns("!Channels", "#Share", "#95 % interval (Wilson)", "#Channels simulated"),
@@ -89,6 +104,41 @@ def glide_tables(job: Job) -> tuple[Table, ...]:
             f"{DISTRIBUTIONS}."
             if a.glide
             else "",
+        ),
+    )
+
+
+def _range_tables(job: Job) -> tuple[Table, ...]:
+    """Times in each range of every channel that has two, and how far they overlap; none without a range switch."""
+    rows: list[tuple[str | Cell, ...]] = []
+    for c in job.analyses.glide:
+        for r in c.ranges:
+            words = (f"{c.channel}, {r.name}", f"pins {r.position}")
+            rows.append((*words, *_times(r.shortest), *_times(r.middle), *_times(r.longest)))
+    if not rows:
+        return ()
+    meet: dict[str, list[str]] = {}
+    for c in job.analyses.glide:
+        if c.ranges:
+            fast, slow = c.ranges
+            ends = f"{quantity(slow.shortest.nominal, 'time')} to {quantity(fast.longest.nominal, 'time')}"
+            meet.setdefault(ends, []).append(str(c.channel))
+    notes = [f"{channel_words(channels)} from {ends}" for ends, channels in meet.items()]
+    return (
+        Table(
+            "Glide times in both positions of the range switch",
+            columns(
+                "!Channel, range",
+                "Joined",
+                "#Shortest",
+                "#Worst case",
+                "#Middle",
+                "#Worst case",
+                "#Longest",
+                "#Worst case",
+            ),
+            tuple(rows),
+            note=f"The ranges overlap, nominally: {'; '.join(notes)}.",
         ),
     )
 

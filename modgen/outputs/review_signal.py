@@ -8,12 +8,14 @@ from typing import TYPE_CHECKING
 from modgen.analysis.montecarlo import DISTRIBUTIONS
 from modgen.outputs.pages import Cell, Table, collapsed, columns
 from modgen.outputs.review_figures import margin_cell
-from modgen.outputs.wording import chosen, grouped, number_words, percent, quantity
+from modgen.outputs.wording import channel_words, grouped, percent, quantity
 
 if TYPE_CHECKING:
     from modgen.analysis.model import Interval, Stability, Travel
     from modgen.outputs.model import Job
 
+#: A source of noise that is worth a number [V].
+LEAST_NOISE = 1e-9
 #: Where a control is turned to, in words, for the places at which channels are compared.
 _PLACES = {0.0: "counter-clockwise end", 0.5: "middle", 1.0: "clockwise end"}
 
@@ -45,7 +47,11 @@ def travel_tables(job: Job) -> tuple[Table, ...]:
 
 def _times(job: Job, group: list[Travel]) -> Table:
     first = group[0]
-    others = [t for t in job.analyses.tapers if t.taper != first.taper and t.channel in {g.channel for g in group}]
+    others = [
+        t
+        for t in job.analyses.tapers
+        if t.taper != first.taper and t.range == first.range and t.channel in {g.channel for g in group}
+    ]
     rows = [
         (
             f"{10 * point.rotation:g}",
@@ -56,26 +62,28 @@ def _times(job: Job, group: list[Travel]) -> Table:
         for n, point in enumerate(first.points)
     ]
     return Table(
-        f"Time against rotation, {_channels(group)}: {first.taper} control on a scale of 0 to 10, clockwise",
+        f"Time against rotation, {_channels(group)}{_range(first)}: {first.taper} control on a scale of 0 to 10, "
+        "clockwise",
         columns("!Scale mark", "#Time", "#Worst case", *(f"#Were it {other.taper}" for other in others)),
         tuple(rows),
         note="Worst case: all parts of the channel to one side. How closely a control follows its law is not in it; "
         "real tracks stray from it by some 20 % between their ends.",
+        narrow=True,
     )
 
 
 def _shares(job: Job, groups: list[list[Travel]]) -> Table:
     glide = job.spec.glide
-    rows = [(f"{_channels(group)}, {group[0].taper}", *_spent(group[0])) for group in groups]
+    rows = [(f"{_channels(group)}{_range(group[0])}, {group[0].taper}", *_spent(group[0])) for group in groups]
     fitted = {group[0].taper for group in groups}
-    rows += [(f"were it {t.taper}", *_spent(t)) for t in job.analyses.tapers if t.taper not in fitted]
+    rows += [(f"were it {t.taper}{_range(t)}", *_spent(t)) for t in job.analyses.tapers if t.taper not in fitted]
     asked = f"{quantity(glide.shortest, 'time')} to {quantity(glide.longest, 'time')}"
     decade = f"{quantity(glide.shortest, 'time')} to {quantity(min(10 * glide.shortest, glide.longest), 'time')}"
     return Table(
         "What the travel is spent on, as shares of the whole rotation",
         columns("!Control", f"#Lowest decade, {decade}", f"#Range asked, {asked}", "#Faster", "#Slower"),
         tuple(rows),
-        note="The lowest decade is where the ear tells times apart best: with little travel for it, it cannot be set.",
+        note="With little travel for the lowest decade a hair of rotation doubles the time there.",
     )
 
 
@@ -85,9 +93,11 @@ def _spent(travel: Travel) -> tuple[str, str, str, str]:
 
 def _matching(job: Job) -> Table:
     found = job.analyses.matching
+    ranged = any(glide.ranges for glide in job.analyses.glide)
     rows = [
         (
-            _PLACES.get(m.rotation, percent(m.rotation)),
+            _PLACES.get(m.rotation, percent(m.rotation))
+            + ((", slow range" if m.rotation else ", fast range") if ranged else ""),
             percent(m.nominal),
             percent(m.half),
             percent(m.most),
@@ -137,14 +147,14 @@ def noise_tables(job: Job) -> tuple[Table, ...]:
     worst = max(found, key=lambda n: n.measured)
     ends = {n.end: n for n in found if n.channel == worst.channel}
     sources = [
-        (f"{terms[0].name} ({terms[0].source})", *(quantity(term.rms, "voltage") for term in terms))
+        (f"{terms[0].name} ({terms[0].source})", *(_rms(term.rms) for term in terms))
         for terms in zip(*(n.terms for n in ends.values()), strict=True)
     ]
     band = f"{quantity(worst.low, 'frequency')} to {quantity(worst.high, 'frequency')}"
     return (
         Table(
             f"Noise at the output from {band}, root mean square",
-            columns("!Channels", "Control", "#Noise", "#At 1 V per octave", "Largest source", "#Limit", "#Left"),
+            columns("!Outputs of", "Control", "#Noise", "#At 1 V per octave", "Largest source", "#Limit", "#Left"),
             tuple((channels, *shown) for channels, _, shown in rows),
             note="The limit is five cents from peak to peak, taken as 6.6 times the root mean square. Noise below some "
             "hundred hertz that rises with falling frequency (1/f) is not in the catalogue and not counted.",
@@ -196,7 +206,7 @@ def stability_tables(job: Job) -> tuple[Table, ...]:
         Table(
             f"Phase margin of the buffers into their worst load; the limit is {degrees(limit)}",
             columns(
-                "!Channels", "Parts", "Stage", "#Phase margin", "Worst with", "#Amplifier's resistance", "#Crossover",
+                "!Buffers of", "Parts", "Stage", "#Phase margin", "Worst with", "#Amplifier's resistance", "#Crossover",
                 "#Overshoot", "#Left",
             ),
             tuple((channels, parts, *shown) for channels, parts, shown in worst),
@@ -213,7 +223,7 @@ def stability_tables(job: Job) -> tuple[Table, ...]:
         made.append(
             Table(
                 "Phase margin of the output buffers by the capacitance of a cable at every output",
-                columns("!Channels", "Stage", *(f"#{head}" for head in heads)),
+                columns("!Buffers of", "Stage", *(f"#{head}" for head in heads)),
                 tuple((channels, *shown) for channels, _, shown in sweeps),
                 note="100 pF is about 1 m of patch cable.",
             )
@@ -258,6 +268,13 @@ def _band(interval: Interval) -> str:
     return f"{quantity(interval.low, 'time')} to {quantity(interval.high, 'time')}"
 
 
+def _range(travel: Travel) -> str:
+    return f", {travel.range} range" if travel.range else ""
+
+
 def _channels(group: list[Travel]) -> str:
-    numbers = number_words(str(travel.channel) for travel in group)
-    return f"{'channel' if len(group) == 1 else 'channels'} {chosen(numbers.split(', '))}"
+    return channel_words(str(travel.channel) for travel in group)
+
+
+def _rms(volts: float) -> str:
+    return quantity(volts, "voltage") if volts >= LEAST_NOISE else f"under {quantity(LEAST_NOISE, 'voltage')}"

@@ -2,7 +2,8 @@
 
 The deck is written from the netlist and the catalogue: the circuit that is simulated is the one that is
 laid out, so that the simulator's answer is a check on the computed times and not an echo of them. Every
-input has a plug in it (its switched contact is open), every output has its load.
+input has a plug in it (its switched contact is open), every output has its load. A panel switch is a resistor for
+each of its contacts, next to nothing or next to infinite; range switches are set for every run.
 """
 
 from __future__ import annotations
@@ -16,6 +17,7 @@ from typing import TYPE_CHECKING
 from modgen.analysis.board import Board, Lane
 from modgen.catalogue.records import Amplifier, Capacitor, Control, Diode
 from modgen.outputs.spice_models import amplifier_model, diode_fit
+from modgen.outputs.wording import answered
 
 if TYPE_CHECKING:
     from modgen.netlist.model import Netlist
@@ -26,19 +28,33 @@ if TYPE_CHECKING:
 STEPS_PER_TIME_CONSTANT = 100
 #: The step's edge, in time constants: short against everything that is measured
 EDGE = 1e-4
-POSITIONS = ("shortest", "middle", "longest")
+#: What is run: its name, where the control stands (fast end, half travel, slow end), whether in the slow range
+Position = tuple[str, int, bool]
+POSITIONS: tuple[Position, ...] = (("shortest", 0, False), ("middle", 1, True), ("longest", 2, True))
+#: With a range switch also where the ranges meet
+RANGE_POSITIONS: tuple[Position, ...] = (
+    POSITIONS[0],
+    ("fast_longest", 2, False),
+    ("slow_shortest", 0, True),
+    *POSITIONS[1:],
+)
+#: Resistance of a contact of a switch [ohm]
+CLOSED, OPEN = 0.01, 1e12
 
 
 @dataclass(frozen=True)
 class Probe:
-    """One channel: where to look, what is turned, and how far at each of :data:`POSITIONS`."""
+    """One channel: where to look, what is turned and how far in each run, and of which runs it tells."""
 
     channel: int
     out: str
     #: the resistor element that stands for the turned part of the control; "" when nothing turns
     element: str
-    resistances: tuple[float, float, float]
-    time_constants: tuple[float, float, float]
+    resistances: tuple[float, ...]
+    time_constants: tuple[float, ...]
+    #: contacts of a range switch, as resistor elements, each with its resistance in every run
+    contacts: tuple[tuple[str, tuple[float, ...]], ...]
+    told: tuple[str, ...]
 
 
 @dataclass(frozen=True)
@@ -106,7 +122,9 @@ def spice_deck(job: Job) -> bytes:
     -------
     bytes
         ASCII text; ``ngspice -b`` prints one line per channel and position,
-        ``CH1 shortest 4.83e-03`` [s], and one ``CH1 error -1.2e-03`` [V].
+        ``CH1 shortest 4.83e-03`` [s], and one ``CH1 error -1.2e-03`` [V]. With a range switch ``shortest`` is in
+        the fast range, ``middle`` and ``longest`` are in the slow one, and ``fast_longest`` and ``slow_shortest``
+        tell where they meet.
 
     Raises
     ------
@@ -117,7 +135,9 @@ def spice_deck(job: Job) -> bytes:
 
     board = Board.of(job.netlist, job.catalogue)
     nodes = Nodes(job.netlist, board.ground)
-    probes = tuple(_probe(board, lane, nodes) for lane in board.channels)
+    ranged = any(lane.switch for lane in board.channels)
+    positions = RANGE_POSITIONS if ranged else POSITIONS
+    probes = tuple(_probe(board, lane, nodes, positions) for lane in board.channels)
     environment = Environment(
         loader=PackageLoader("modgen.outputs", "templates"),
         undefined=StrictUndefined,
@@ -129,7 +149,8 @@ def spice_deck(job: Job) -> bytes:
     environment.filters["number"] = number
     start, stop = step_of(job.spec)
     text = environment.get_template("circuit.cir.j2").render(
-        title=re.sub(r"[^ -~]+", "?", job.netlist.title or job.spec.module),
+        title=_ascii(job.netlist.title or job.spec.module),
+        waived=tuple(_ascii(line) for line in answered(job.report)),
         spec=job.spec,
         blocks=tuple(_blocks(board, nodes)),
         supply=tuple(_supply(job.spec, board, nodes)),
@@ -138,7 +159,8 @@ def spice_deck(job: Job) -> bytes:
         probes=probes,
         start=start,
         stop=stop,
-        runs=tuple(_runs(job.spec, probes)),
+        runs=tuple(_runs(job.spec, probes, positions)),
+        ranged=ranged,
         remaining=remaining_of(job.spec),
     )
     return text.encode("ascii", "replace")
@@ -160,30 +182,51 @@ def remaining_of(spec: Spec) -> float:
     return spec.glide.within / spec.glide.step
 
 
-def _runs(spec: Spec, probes: tuple[Probe, ...]) -> Iterator[Run]:
+def _ascii(text: str) -> str:
+    """A text for a comment of one line, in the letters that every simulator reads."""
+    return re.sub(r"[^ -~]+", "?", text)
+
+
+def _runs(spec: Spec, probes: tuple[Probe, ...], positions: tuple[Position, ...]) -> Iterator[Run]:
     """Analysis steps from the expected times: fine for the fastest lane, long enough for the slowest."""
     until = math.log(1 / remaining_of(spec)) + 1.0
-    for index, position in enumerate(POSITIONS):
+    for index, (position, _, _) in enumerate(positions):
         fastest = min(probe.time_constants[index] for probe in probes)
         slowest = max(probe.time_constants[index] for probe in probes)
         edge = EDGE * fastest
         yield Run(position, index, fastest / STEPS_PER_TIME_CONSTANT, until * slowest + edge, edge)
 
 
-def _probe(board: Board, lane: Lane, nodes: Nodes) -> Probe:
+def _probe(board: Board, lane: Lane, nodes: Nodes, positions: tuple[Position, ...]) -> Probe:
     if not lane.output_nets:
         raise ValueError(f"channel {lane.channel} has no output socket to look at")
-    capacitance = sum(1 / sum(1 / board.capacitance(ref).nominal for ref in branch.refs) for branch in lane.branches)
+    fast, slow = (
+        sum(1 / sum(1 / board.capacitance(ref).nominal for ref in branch.refs) for branch in branches)
+        for branches in (lane.branches, lane.slow_branches)
+    )
     series = sum(board.resistance(ref).nominal for ref in lane.isolating)
-    resistances = _positions(board, lane)
-    short, middle, long = ((series + r) * capacitance for r in resistances)
+    turned = _positions(board, lane)
+    resistances = tuple(turned[where] for _, where, _ in positions)
+    contacts = []
+    if lane.switch is not None:
+        for contact in (contact for contact in board.contacts if contact.ref == lane.switch.ref):
+            held = {True: lane.switch.slow, False: lane.switch.fast}
+            states = tuple(CLOSED if held[slow] == contact.position else OPEN for _, _, slow in positions)
+            contacts.append((_contact(contact.ref, contact.position), states))
     return Probe(
         channel=lane.channel,
         out=nodes.net(lane.output_nets[0]),
         element=_turned(board, lane) if lane.wiring.adjustable else "",
         resistances=resistances,
-        time_constants=(short, middle, long),
+        time_constants=tuple((series + turned[where]) * (slow if late else fast) for _, where, late in positions),
+        contacts=tuple(contacts),
+        told=tuple(name for name, _, _ in (positions if lane.switch else POSITIONS)),
     )
+
+
+def _contact(ref: str, position: str) -> str:
+    """The element of a switch's contact."""
+    return element("R", ref, "_A" if position == "1-2" else "_B")
 
 
 def _positions(board: Board, lane: Lane) -> tuple[float, float, float]:
@@ -231,6 +274,8 @@ def _element(board: Board, ref: str, nodes: Nodes, turned: str) -> Iterator[str]
             yield from _two_ended(board, ref, one, two)
     elif kind == "control":
         yield from _control(board, ref, nodes, turned)
+    elif kind == "switch":
+        yield from _switch(board, ref, nodes)
     elif kind == "amplifier":
         yield from _package(board, ref, nodes)
     elif kind == "jack" and (tip := nodes.pin(ref, "T")) is not None:
@@ -266,6 +311,15 @@ def _control(board: Board, ref: str, nodes: Nodes, turned: str) -> Iterator[str]
         if left is not None and right is not None and left != right:
             # a half that nobody turns has all of the track but nothing flows in it, or it is a fixed part
             yield f"{half} {left} {right} {whole}" + ("  ; turned below" if half == turned else "")
+
+
+def _switch(board: Board, ref: str, nodes: Nodes) -> Iterator[str]:
+    """Both contacts, the switch in position 1-2."""
+    for contact in board.contacts:
+        if contact.ref == ref:
+            ohms = CLOSED if contact.position == "1-2" else OPEN
+            ends = f"{nodes.net(contact.common)} {nodes.net(contact.throw)}"
+            yield f"{_contact(ref, contact.position)} {ends} {number(ohms)}  ; closed in position {contact.position}"
 
 
 def _package(board: Board, ref: str, nodes: Nodes) -> Iterator[str]:

@@ -6,10 +6,10 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from modgen.catalogue.records import Amplifier, Capacitor, Control, Diode, Header
+from modgen.catalogue.records import Amplifier, Capacitor, Control, Diode, Header, Switch
 from modgen.catalogue.records import Part as Record
 from modgen.netlist.model import Part
-from modgen.outputs.boardfacts import records_of
+from modgen.outputs.boardfacts import range_words, records_of
 from modgen.outputs.marking import orientation, printed
 from modgen.outputs.pages import TICK, Cell, Column, Table, columns
 from modgen.outputs.partwords import value_words
@@ -24,7 +24,7 @@ HEIGHT_STEP = 0.05e-3
 #: Most digits of a value; no part of the IEC 60063 series has more than three.
 VALUE_DIGITS = 4
 
-_PANEL = ("jack", "control")  # last, in this order: heat comes to the controls once only
+_PANEL = ("jack", "switch", "control")  # last, in this order: heat comes to the controls once only
 
 _KINDS = {
     "resistor": "resistors",
@@ -33,6 +33,7 @@ _KINDS = {
     "amplifier": "amplifier packages",
     "control": "controls",
     "jack": "jacks",
+    "switch": "switches",
     "header": "power header",
 }
 
@@ -82,7 +83,7 @@ class Step:
 
 
 def steps(job: Job) -> tuple[Step, ...]:
-    """Assembly steps: rising height on the board, then jacks, then controls.
+    """Assembly steps: rising height on the board, then jacks, switches and controls.
 
     Parameters
     ----------
@@ -114,7 +115,7 @@ def steps(job: Job) -> tuple[Step, ...]:
                 land_pattern=key[4],
                 facts=_facts(first, len(parts)),
                 lines=_lines(job, parts, records),
-                notes=_notes(first, parts, records),
+                notes=_notes(job, first, parts, records),
             )
         )
     return tuple(made)
@@ -159,7 +160,7 @@ def _size(record: Record) -> float:
     return 0.0
 
 
-def _notes(record: Record, parts: Sequence[Part], records: Mapping[str, Record]) -> tuple[str, ...]:
+def _notes(job: Job, record: Record, parts: Sequence[Part], records: Mapping[str, Record]) -> tuple[str, ...]:
     if isinstance(record, Control):
         return (
             f"Soldering limit: {record.solder_temperature:g} °C for {record.solder_time:g} s a pin, below the usual "
@@ -168,6 +169,12 @@ def _notes(record: Record, parts: Sequence[Part], records: Mapping[str, Record])
         )
     if record.kind == "jack":
         return ("Put the panel on and tighten the nuts before soldering, so that all sit square.",)
+    if isinstance(record, Switch):
+        return (
+            f"{range_words(job)} The lever of a toggle points away from the pin that it joins to the middle one: check "
+            "with a meter before the panel is marked.",
+            "Put the panel on and tighten the nuts before soldering.",
+        )
     if isinstance(record, Amplifier) and record.mount == "through-hole":
         return (
             "Keep the packages out until the rails have been measured. With sockets (which the parts list does not "

@@ -13,7 +13,7 @@ import re
 from typing import TYPE_CHECKING
 
 from modgen.outputs.bom import CURRENCY, bom_lines, cost
-from modgen.outputs.wording import CLEARED, NOT_CLEARED
+from modgen.outputs.wording import CLEARED, NOT_CLEARED, answered
 
 if TYPE_CHECKING:
     from modgen.outputs.model import Job
@@ -69,7 +69,7 @@ def write_bom_csv(job: Job) -> bytes:
     ----------
     job : Job
         The module, built and judged; ``spec.order`` says for how many boards and with what spares, ``stock`` what
-        is on hand.
+        is on hand. The last column has the verdict and what somebody answers for, with the reason.
 
     Returns
     -------
@@ -78,7 +78,7 @@ def write_bom_csv(job: Job) -> bytes:
     """
     lines = bom_lines(job.netlist, job.catalogue)
     order = cost(lines, job.spec.order.boards, job.spec.order.spares, job.stock)
-    status = CLEARED if job.report.cleared else NOT_CLEARED
+    status = "; waived: ".join((CLEARED if job.report.cleared else NOT_CLEARED, *answered(job.report)))
     out = io.StringIO()
     writer = csv.writer(out, lineterminator="\r\n")
     writer.writerow(HEADER)
@@ -111,7 +111,7 @@ def write_bom_csv(job: Job) -> bytes:
                 NO_PRICE if each.total is None else f"{each.total:.2f}",
                 "" if each.total is None else CURRENCY,
                 "invented" if line.invented else "",
-                status,
+                safe_text(status),
             )
         )
     return b"\xef\xbb\xbf" + out.getvalue().encode("utf-8")

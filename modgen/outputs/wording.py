@@ -195,6 +195,28 @@ def number_words(numbers: Iterable[str]) -> str:
     return bom.short_ranges(f"P{number}" for number in ordered).replace("P", "").replace("-", " to ")
 
 
+def channel_words(numbers: Iterable[str]) -> str:
+    """Numbers of channels in words.
+
+    Parameters
+    ----------
+    numbers
+        Whole numbers as text, in any order. [-]
+
+    Returns
+    -------
+    str
+        ``channel 4``, ``channels 1 to 8``.
+
+    Examples
+    --------
+    >>> channel_words(["2", "1", "3"]), channel_words(["4"])
+    ('channels 1 to 3', 'channel 4')
+    """
+    found = set(numbers)
+    return f"{'channel' if len(found) == 1 else 'channels'} {number_words(found)}"
+
+
 def pin_words(numbers: Iterable[str]) -> str:
     """Pin numbers of one part in words, three or more in a row as a range.
 
@@ -264,6 +286,8 @@ class Verdict:
     reason: str
     #: the errors that stand, one line each
     standing: tuple[str, ...]
+    #: what somebody answers for, see :func:`answered`
+    answered: tuple[str, ...] = ()
 
 
 def verdict(report: Report) -> Verdict:
@@ -301,4 +325,28 @@ def verdict(report: Report) -> Verdict:
     headline = CLEARED if report.cleared else NOT_CLEARED
     if len(standing) > MOST_STANDING:
         standing = (*standing[:MOST_STANDING], f"and {len(standing) - MOST_STANDING} more, all of them under Findings")
-    return Verdict(report.cleared, headline, reason[0].upper() + reason[1:] + ".", standing)
+    return Verdict(report.cleared, headline, reason[0].upper() + reason[1:] + ".", standing, answered(report))
+
+
+def answered(report: Report) -> tuple[str, ...]:
+    """What somebody answers for: rule, parts and the reason given, one line for each rule and reason.
+
+    Parameters
+    ----------
+    report
+        What the rules found. [-]
+
+    Returns
+    -------
+    tuple of str
+        In the order of the findings; empty when nothing is waived. In plain letters but for the reason, since
+        tables and decks carry it too.
+    """
+    parts: dict[tuple[str, str], dict[str, None]] = {}
+    for f in report.findings:
+        if f.waived:
+            parts.setdefault((f.rule, f.waived), {}).update(dict.fromkeys(f.parts))
+    return tuple(
+        f"{rule} on {bom.short_ranges(list(refs))}: {reason}" if refs else f"{rule}: {reason}"
+        for (rule, reason), refs in parts.items()
+    )

@@ -57,6 +57,7 @@ class Finding:
     waived: str = ""  # the reason, when somebody answers for it
     nets: tuple[str, ...] = ()
     key: str = ""
+    margin: float | None = None  # share of the limit that is left [-], as it was measured
 
 
 @dataclass(frozen=True)
@@ -97,6 +98,8 @@ class Context:
     #: only for rules that run last: what the others found, and which of them ran
     findings: tuple[Finding, ...] = field(default=())
     ran: tuple[str, ...] = field(default=())
+    #: the circuit that the spec asks for, as it was before anybody else had it in hands
+    intended: Board | None = None
 
 
 class Rule:
@@ -114,6 +117,7 @@ class Rule:
     #: whether it makes sense only where 0 V and the rails bear the names that the netlist conventions give them
     needs_rails: ClassVar[bool] = True
     needs_library: ClassVar[bool] = False  # the circuit library's own check
+    needs_intended: ClassVar[bool] = False  # the netlist that the spec asks for
     runs_last: ClassVar[bool] = False  # looks at what the other rules found
 
     def __init_subclass__(cls) -> None:

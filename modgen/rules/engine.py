@@ -19,13 +19,15 @@ from modgen.catalogue import Catalogue
 from modgen.netlist.model import Netlist
 from modgen.problems import InputError, Place, Problem
 from modgen.rules.contract import LEVELS, Checked, Context, Finding, Measurement, Report, Rule
+from modgen.rules.lost import restored
 from modgen.rules.supplies import blind
 from modgen.spec.model import Spec, Waiver
 
 #: The folders that hold rules, one a subject, in the order in which people read them.
-SUBJECTS = ("wiring", "supply", "ratings", "signal", "function", "ordering")
+SUBJECTS = ("wiring", "supply", "ratings", "signal", "function", "ordering", "spec")
 
 NO_SPEC = "needs the spec, and none was given"
+NO_INTENDED = "needs the netlist that the spec asks for, and none was given"
 NO_LIBRARY = "the circuit library checks a circuit while it builds it, not a file"
 
 
@@ -122,6 +124,7 @@ def _finding(rule: Rule, measurement: Measurement) -> Finding:
         unit=measurement.unit,
         nets=measurement.nets,
         key=measurement.key,
+        margin=measurement.margin,
     )
 
 
@@ -159,6 +162,7 @@ def judge(
     catalogue: Catalogue,
     spec: Spec | None = None,
     rules: Sequence[Rule] | None = None,
+    intended: Netlist | None = None,
 ) -> Report:
     """Run every rule on a netlist.
 
@@ -172,6 +176,8 @@ def judge(
         The intent, when there is one; rules that need it are listed as not judged without it.
     rules
         The rules to run; all of :func:`discover` by default.
+    intended
+        The circuit that the spec asks for, which the netlist is compared with.
 
     Returns
     -------
@@ -187,8 +193,9 @@ def judge(
     """
     chosen = discover() if rules is None else tuple(rules)
     context = Context(
-        board=Board.of(netlist, catalogue),
+        board=Board.of(restored(netlist, catalogue, intended), catalogue),
         spec=spec,
+        intended=Board.of(intended, catalogue) if intended is not None else None,
         library_messages=netlist.library_messages,
         known_rules=tuple(sorted({rule.name for rule in discover()} | {rule.name for rule in chosen})),
     )
@@ -202,6 +209,9 @@ def judge(
     for rule in sorted(chosen, key=lambda rule: rule.runs_last):
         if rule.needs_spec and spec is None:
             checked[rule.name] = Checked(rule.name, 0, None, "", judged=False, not_judged=NO_SPEC)
+            continue
+        if rule.needs_intended and intended is None:
+            checked[rule.name] = Checked(rule.name, 0, None, "", judged=False, not_judged=NO_INTENDED)
             continue
         if rule.needs_rails and without_rails:
             checked[rule.name] = Checked(rule.name, 0, None, "", judged=False, not_judged=without_rails)

@@ -135,6 +135,7 @@ SPEC_KEYS = {
     "glide.cover": "word",
     "glide.measure": "word",
     "glide.taper": "word",
+    "glide.ranges": "count",
     "signal.source": "resistance",
     "signal.load": "resistance",
     "signal.span": "span",
@@ -314,6 +315,8 @@ def _changed(spec: Spec, text: str) -> Spec:
     if kind == "span":
         low, high = parse_span(value)
         changed = replace(held, low=low, high=high)
+    elif kind == "count":
+        changed = replace(held, **{name: int(value)})
     elif kind == "flag":
         changed = replace(held, **{name: value == "true"})
     else:

@@ -101,20 +101,37 @@ def _eliminate(rows: list[list[float]]) -> list[float]:
 
 
 def loop_through_others(board: Board, section: Section) -> bool:
-    """Whether the output reaches the inverting input by way of other amplifiers, through resistors."""
+    """Whether the output holds the inverting input by way of other amplifiers, through resistors.
+
+    Parameters
+    ----------
+    board
+        The netlist seen as electronics.
+    section
+        One of its sections.
+
+    Returns
+    -------
+    bool
+        True when some way leads from the output to the inverting input without turning the sign round. Two
+        followers whose outputs are exchanged reach each other's inverting inputs: each turns the sign round, and
+        the pair latches. A net that an output drives takes nothing through a resistor.
+    """
     if section.output is None or section.inverting is None:
         return False
-    stop = set(board.supply_nets)
-    reached, queue = {section.output}, [section.output]
+    driven = {s.output for s in board.sections if s.output}
+    stop = {*board.supply_nets, section.output}
+    # (net, whether the sign there is the output's own)
+    reached, queue = {(section.output, True)}, [(section.output, True)]
     while queue:
-        at = queue.pop()
-        onward = [step.net for step in board.between(at, "resistor", "control")]
+        at, same = queue.pop()
+        onward = [(step.net, same) for step in board.between(at, "resistor", "control") if step.net not in driven]
         for other in board.sections:
-            if at in (other.inverting, other.noninverting) and other.output:
-                same = (other.package, other.index) == (section.package, section.index)
-                onward += [] if same else [other.output]
-        for net in onward:
-            if net not in reached | stop:
-                reached.add(net)
-                queue.append(net)
-    return section.inverting in reached
+            if other.output and (other.package, other.index) != (section.package, section.index):
+                onward += [(other.output, same)] if at == other.noninverting else []
+                onward += [(other.output, not same)] if at == other.inverting and not other.follower else []
+        for state in onward:
+            if state[0] not in stop and state not in reached:
+                reached.add(state)
+                queue.append(state)
+    return (section.inverting, True) in reached

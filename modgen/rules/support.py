@@ -96,6 +96,32 @@ def closed_contacts(board: Board) -> tuple[Contact, ...]:
     )
 
 
+#: Switches that share nets and are tried in every combination [switches]; of more, all stand alike. Our choice.
+MOST_TOGETHER = 4
+
+
+def switch_positions(board: Board) -> tuple[tuple[Contact, ...], ...]:
+    """Closed contacts of the panel switches, as ``(switch, common net, throw net)``, in all their positions.
+
+    Switches that meet on a net are tried in every combination; those that do not are set at once, since no
+    position of the one matters to the other. Without a switch there is one state, with nothing closed.
+    """
+    join = groups((contact.common, contact.throw) for contact in board.contacts)
+    clusters: dict[str, list[str]] = {}
+    for contact in board.contacts:
+        refs = clusters.setdefault(join(contact.common), [])
+        if contact.ref not in refs:
+            refs.append(contact.ref)
+    tried: list[list[tuple[Contact, ...]]] = []
+    for refs in clusters.values():
+        states = list(board.switch_states(refs))
+        if len(refs) > MOST_TOGETHER:
+            states = [states[0], states[-1]]
+        tried.append([tuple((c.ref, c.common, c.throw) for c in state) for state in states])
+    most = max((len(states) for states in tried), default=1)
+    return tuple(tuple(c for states in tried for c in states[n % len(states)]) for n in range(most))
+
+
 # --- DC paths -----------------------------------------------------------------------------------
 
 
@@ -284,14 +310,19 @@ def pins_text(ref: str, pins: Iterable[str]) -> str:
 def may_stay_open(board: Board, ref: str, pin: str) -> str:
     """Why a pin may be left open; ``""`` when it may not.
 
-    The tip switch of a socket that feeds no amplifier input (an output socket) has nothing to normal, and
-    the negative pins of the header have nothing to feed on a board whose amplifiers stand on 0 V.
+    The tip switch of a socket that feeds no amplifier input (an output socket) has nothing to normal, one throw of
+    a panel switch may lead nowhere, and the negative pins of the header have nothing to feed on a board whose
+    amplifiers stand on 0 V.
     """
     if ref not in board.netlist.by_ref:
         return ""
     kind = board.kind(ref)
     if kind == "jack" and pin == "TN" and not is_input(board, ref):
         return "an output socket normals nothing"
+    if kind == "switch" and pin in ("1", "3"):
+        used = [net for other in ("1", "2", "3") if other != pin and (net := board.net(ref, other))]
+        if len(used) == 2 and all(len(board.on(net)) > 1 for net in used):
+            return "a switch opens the way in one of its positions"
     if kind == "header":
         grounds = set(ground_nets(board))
         fed = {(s.negative in grounds) for s in board.sections}

@@ -19,6 +19,7 @@ from modgen.catalogue.records import (
     Jack,
     PinDef,
     Resistor,
+    Switch,
 )
 from modgen.catalogue.records import Part as Record
 from modgen.netlist.model import Net, Netlist, Part
@@ -176,6 +177,16 @@ RECORDS: tuple[Record, ...] = (
         current=0.5,
         panel_hole=6e-3,
     ),
+    Switch(
+        **COMMON,
+        key="toggle",
+        family="s",
+        kind="switch",
+        pins=_pins("1", "2", "3"),
+        voltage=28.0,
+        current=2.0,
+        panel_hole=6e-3,
+    ),
     Header(
         **COMMON,
         key="header",
@@ -253,6 +264,7 @@ def make_lanes(
     back_to_back: bool = False,
     single: bool = False,
     outputs: int = 1,
+    ranged: bool = False,
     amplifier_key: str = "tl072",
 ) -> Bench:
     """The channel circuit of design section 4 with the values of section 11."""
@@ -277,6 +289,10 @@ def make_lanes(
             bench.add(f"C{base + 1}", "10u", "c-el", {"1": "0V", "2": f"{ch}_MID"}, channel=n)
         else:
             bench.add(f"C{base}", "1u", "c-pp", {"1": glide, "2": "0V"}, channel=n)
+        if ranged:
+            bench.add(f"S{k}", "S", "toggle", {"1": glide, "2": f"{ch}_RANGE", "3": f"{ch}_KEEP"}, channel=n)
+            bench.add(f"C{base + 5}", "9u", "c-pp", {"1": f"{ch}_RANGE", "2": "0V"}, channel=n)
+            bench.add(f"R{base + 8}", "10k", "r", {"1": f"{ch}_DRIVE", "2": f"{ch}_KEEP"}, channel=n)
         back = f"{ch}_FB" if inside else f"{ch}_DRIVE"
         pins = {"1": f"{ch}_BUF", "2": f"{ch}_BUF", "3": f"{ch}_A", "4": lower}
         pins |= {"5": glide, "6": back, "7": f"{ch}_DRIVE", "8": "V+"}

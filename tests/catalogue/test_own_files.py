@@ -232,13 +232,15 @@ CASES = {
     "no kind": (
         RESISTOR.replace("    kind: resistor\n", ""),
         "mine.yaml:2:3: error: the family 'my-film' has no kind\n"
-        "    why: the kind decides which figures it has: resistor, capacitor, control, diode, amplifier, jack, header\n"
+        "    why: the kind decides which figures it has: resistor, capacitor, control, diode, amplifier, jack, switch, "
+        "header\n"
         "    fix: add kind: resistor, for example, or like: and the name of a family whose figures it shares",
     ),
     "no kind, and the name of a shipped family": (
         RESISTOR.replace("    kind: resistor\n", "").replace("my-film", "film-pp-box"),
         "mine.yaml:2:3: error: the family 'film-pp-box' has no kind\n"
-        "    why: the kind decides which figures it has: resistor, capacitor, control, diode, amplifier, jack, header\n"
+        "    why: the kind decides which figures it has: resistor, capacitor, control, diode, amplifier, jack, switch, "
+        "header\n"
         "    fix: add like: film-pp-box to take over the figures of the family that is known by this name, "
         "or kind: capacitor to state all of its own",
     ),

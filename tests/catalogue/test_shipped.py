@@ -16,6 +16,7 @@ from modgen.catalogue import (
     Header,
     Jack,
     Resistor,
+    Switch,
     load_catalogue,
 )
 from modgen.catalogue.layers import EVIDENCE_KINDS
@@ -77,10 +78,15 @@ def test_get_and_of():
     assert CATALOGUE.get("tl072-dip8") is CATALOGUE.parts["tl072-dip8"]
     assert CATALOGUE.get("no-such-part") is None
     assert {type(part) for part in CATALOGUE.of(Diode)} == {Diode}
-    assert sum(
-        len(CATALOGUE.of(kind)) for kind in (Amplifier, Capacitor, Control, Diode, Header, Jack, Resistor)
-    ) == len(PARTS)
+    kinds = (Amplifier, Capacitor, Control, Diode, Header, Jack, Resistor, Switch)
+    assert sum(len(CATALOGUE.of(kind)) for kind in kinds) == len(PARTS)
     assert CATALOGUE.families == tuple(sorted({part.family for part in PARTS}))
+
+
+def test_a_switch_of_one_pole_with_its_common_in_the_middle():
+    (switch,) = CATALOGUE.of(Switch)
+    assert [(pin.number, pin.name) for pin in switch.pins] == [("1", "1"), ("2", "common"), ("3", "3")]
+    assert (switch.mount, switch.voltage, switch.current) == ("panel", 28.0, 2.0)
 
 
 def test_amplifiers_come_in_both_forms_and_both_mounts():
@@ -368,6 +374,7 @@ def test_schottky_limits(key, volts, drop):
         ("electrolytic-surface-25v-47u", "CAPAE660X540N"),
         ("control-9mm-log-1m0", "POT250W100L950D1100Q3"),
         ("jack-35-switched", "JACK310W120L900D1050Q3"),
+        ("switch-toggle-spdt", "SW470W120L1270D690Q3"),
         ("header-2x5", "HDRS10W64P254_2X5L2030D890H910"),
     ],
 )

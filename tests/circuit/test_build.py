@@ -9,6 +9,7 @@ from dataclasses import replace
 
 import pytest
 
+from modgen.catalogue.records import PinDef, Switch
 from modgen.circuit import Built, CircuitMismatch, build
 from modgen.design.model import Design, Placed
 from modgen.netlist import Net, Part, parse_netlist
@@ -142,6 +143,27 @@ def test_output_resistor_inside_the_loop(design_of: Callable[..., Design]) -> No
     assert netlist.by_net["CH1_FB"].pins == (("C2", "2"), ("R6", "2"), ("U1", "6"))
     assert netlist.by_net["CH1_DRIVE"].pins == (("C2", "1"), ("R5", "1"), ("U1", "7"))
     assert netlist.by_ref["C2"].field("role") == "compensation"
+
+
+def test_a_panel_switch(two: Design) -> None:
+    pins = tuple(PinDef(number, name, "passive") for number, name in (("1", "1"), ("2", "common"), ("3", "3")))
+    shared = {"mount": "panel", "body": two.parts[0].record.body, "land_pattern": "LP-S", "description": "toggle"}
+    toggle = Switch(
+        key="toggle", family="toggle", kind="switch", pins=pins, voltage=28.0, current=2.0, panel_hole=6e-3, **shared
+    )
+    capacitor = next(p for p in two.parts if p.role == "glide-capacitor")
+    added = (
+        Placed("S1", toggle, "range-switch", "toggle", (("1", "CH1_GLIDE"), ("2", "CH1_RANGE"), ("3", "CH1_KEEP")), 1),
+        replace(capacitor, ref="C90", role="range-capacitor", pins=(("1", "CH1_RANGE"), ("2", "0V"))),
+        Placed("R90", two.values.isolating, "range-keeper", "2.2k", (("1", "CH1_DRIVE"), ("2", "CH1_KEEP")), 1),
+    )
+    built = build(replace(two, parts=(*two.parts, *added)))
+    switch = parse_netlist(built.netlist_text).by_ref["S1"]
+    assert (switch.letters, switch.value, switch.land_pattern, switch.sheet) == ("S", "toggle", "LP-S", "/CH1/")
+    assert switch.fields == (("channel", "1"), ("part", "toggle"), ("role", "range-switch"))
+    assert built.netlist.by_net["CH1_RANGE"].pins == (("C90", "1"), ("S1", "2"))
+    assert built.netlist.by_net["CH1_KEEP"].pins == (("R90", "2"), ("S1", "3"))
+    assert built.netlist.library_messages == ()
 
 
 def test_land_patterns_of_ones_own_library(two: Design) -> None:

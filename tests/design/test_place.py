@@ -34,6 +34,7 @@ REGIMES = {
     "chain": ("channels: 3", "jacks: 6", "normalling: chain"),
     "single": ("rails: {positive: 5 V, negative: 0 V}", "signal: {span: 0 V to 3 V}"),
     "pitch": ("signal: {pitch: true}",),
+    "two ranges": ("glide: {shortest: 1 ms, longest: 2 s, ranges: 2}",),
     "pitch, extra": ("channels: 2", "jacks: 5", "signal: {pitch: true}"),
 }
 
@@ -72,6 +73,28 @@ def test_two_capacitors_in_parallel_where_one_does_not_reach(design_of: Callable
     one, two = role(design, "glide-capacitor")
     assert nets(one) == nets(two) == {"1": "CH1_GLIDE", "2": "0V"}
     assert one.record.capacitance + two.record.capacitance == pytest.approx(14.7e-6)
+
+
+def test_a_range_switch(design_of: Callable) -> None:
+    design = design_of("channels: 2", "jacks: 4", "glide: {shortest: 1 ms, longest: 12 s, ranges: 2}")
+    switch, second = role(design, "range-switch")
+    assert (switch.ref, switch.channel, second.ref, second.channel) == ("S1", 1, "S2", 2)
+    # 1-2 puts the second capacitor beside the first; 2-3 leaves it at the output's voltage, through a resistor
+    assert nets(switch) == {"1": "CH1_GLIDE", "2": "CH1_RANGE", "3": "CH1_KEEP"}
+    (added, _), (keeper, _) = role(design, "range-capacitor"), role(design, "range-keeper")
+    assert nets(added) == {"1": "CH1_RANGE", "2": "0V"}
+    assert nets(keeper) == {"1": "CH1_DRIVE", "2": "CH1_KEEP"}
+    (first, _) = role(design, "glide-capacitor")
+    assert nets(first) == {"1": "CH1_GLIDE", "2": "0V"}
+    assert added.record.capacitance > first.record.capacitance
+    assert keeper.record == role(design, "input-series")[0].record
+    assert all(part.reason for part in (switch, added, keeper))
+
+
+def test_no_range_switch_unasked(design_of: Callable) -> None:
+    design = design_of("channels: 1", "jacks: 2", "glide: {shortest: 40 ms, longest: 30 s}")
+    assert not [part for part in design.parts if part.role.startswith("range-")]
+    assert design.values.range_switch is None
 
 
 def test_output_resistor_inside_the_loop(design_of: Callable) -> None:

@@ -209,3 +209,10 @@ def test_a_switch_is_offered_where_it_helps_and_only_there(
     assert refused("glide: {shortest: 1 ms, longest: 12 s, cover: worst-case}").fix.endswith(offer)
     assert make_design(spec_of("glide: {shortest: 1 ms, longest: 12 s, cover: worst-case, ranges: 2}"), catalogue)
     assert offer not in refused("glide: {shortest: 5 ms, longest: 900 s}").fix
+
+
+def test_ten_volts_through_a_jfet_pair_on_twelve(refused: Callable) -> None:
+    """The guaranteed input range of the type ends 4 V from either rail: 11.4 V less a diode less 4 V is 7 V."""
+    problem = refused("signal: {span: ±10 V}", "build: {amplifier: TL07x}")
+    assert problem.what == "amplifier 'TL07x' does not work in this module"
+    assert problem.why == "TL07x: the input range at the negative rail is 2.92 V short behind 1n5818"

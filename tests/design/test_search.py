@@ -16,7 +16,7 @@ from modgen.catalogue import Amplifier, Capacitor, Catalogue, Control, Diode, Re
 from modgen.design import practice
 from modgen.design.capacitors import Arrangement, arrangements, pairs
 from modgen.design.choose import choose
-from modgen.design.network import Grid, Room, controls, isolators
+from modgen.design.network import Grid, Room, controls, isolators, meeting
 from modgen.design.stage import Stage, stages_of
 from modgen.design.supply import price_at
 from modgen.formulas.glide import time_factor
@@ -69,9 +69,29 @@ def feasible(spec: Spec, cap: Arrangement, pot: Control, r: Resistor) -> tuple[f
     else:
         shortest = factor * cap.capacitance * (r.resistance + pot.end)
         longest = factor * cap.capacitance * (r.resistance + pot.resistance)
+    if cap.switched:
+        fast, worst = cap.parts[0], spec.glide.cover == "worst-case"
+        slow_shortest = shortest
+        fast_longest = longest * fast.capacitance / cap.capacitance
+        shortest = shortest * fast.capacitance / cap.capacitance
+        if worst:
+            fast_longest *= (1 - fast.tolerance) / (1 - tolerance_of(cap))
+            shortest *= (1 + fast.tolerance) / (1 + tolerance_of(cap))
+        if fast_longest < slow_shortest:
+            return None
     if shortest > spec.glide.shortest * (1 + 1e-9) or longest < spec.glide.longest * (1 - 1e-9):
         return None
     return shortest, longest
+
+
+def added_pairs(singles: list[Arrangement]) -> list[Arrangement]:
+    """A capacitor for the fast range with every larger one that a switch can add."""
+    return [
+        Arrangement((one.parts[0], two.parts[0]), switched=True)
+        for one in singles
+        for two in singles
+        if not one.leaky and not two.leaky and two.capacitance > one.capacitance
+    ]
 
 
 def networks(spec: Spec, catalogue: Catalogue, stage: Stage) -> Iterator[tuple[tuple, tuple[str, str, str]]]:
@@ -80,9 +100,8 @@ def networks(spec: Spec, catalogue: Catalogue, stage: Stage) -> Iterator[tuple[t
     signal = max(abs(spec.signal.low), abs(spec.signal.high))
     bias = stage.amplifier.bias_max
     singles = arrangements(spec, catalogue)[0]
-    for cap, pot, r in itertools.product(
-        [*singles, *pairs(singles)], controls(spec, catalogue)[0], isolators(spec, catalogue)
-    ):
+    caps = added_pairs(singles) if spec.glide.ranges == 2 else [*singles, *pairs(singles)]
+    for cap, pot, r in itertools.product(caps, controls(spec, catalogue)[0], isolators(spec, catalogue)):
         times = feasible(spec, cap, pot, r)
         if times is None or span / (r.resistance * (1 - r.tolerance)) > stage.amplifier.short_circuit_least:
             continue
@@ -157,6 +176,12 @@ CASES = {
     ),
     "pitch": ("signal: {pitch: true}",),
     "beyond one capacitor": ("glide: {shortest: 200 ms, longest: 12 s}", "accuracy: {offset: 3 %}"),
+    "two ranges": ("glide: {shortest: 2 ms, longest: 5 s, ranges: 2}",),
+    "two ranges that must meet": ("glide: {shortest: 60 ms, longest: 8 s, ranges: 2}", "accuracy: {offset: 3 %}"),
+    "two ranges, size, worst case": (
+        "build: {prefer: size}",
+        "glide: {shortest: 20 ms, longest: 4 s, ranges: 2, cover: worst-case}",
+    ),
     "settling, 25 boards": (
         "glide: {shortest: 20 ms, longest: 3 s, measure: settle, step: 5 V, within: 5 cents}",
         "order: {boards: 25}",
@@ -237,3 +262,37 @@ def test_many_combinations_in_little_time_and_memory(catalogue: Catalogue, spec_
     assert len(outcome.best.network.capacitor.parts) == 2
     assert peak < 200e6
     assert spent < 5.0, "about 0.6 s on two idle cores; tracing costs a part of it"
+
+
+def test_ranges_that_do_not_meet_are_not_reached(catalogue: Catalogue, spec_of: Callable) -> None:
+    """Neither found nor named as the nearest that can be had: a control of 10 kohm cannot fill the gap."""
+    spec = spec_of("glide: {shortest: 20 ms, longest: 100 ms, ranges: 2}")
+    one, two = (catalogue.parts[f"film-pet-5mm-63v-{value}"] for value in ("100n", "1u0"))
+    caps = [Arrangement((one, two), switched=True)]
+    pots = [p for p in catalogue.of(Control) if p.resistance == 10e3][:1]
+    rs = [r for r in catalogue.of(Resistor) if r.resistance == 47e3][:1]
+    grid = Grid(spec, caps, pots, rs)
+    assert len(grid.index) == 0
+    reach = grid.reach(Room(0.0, 1.0, 1.0, 0.0))
+    assert (reach.longest, reach.shortest) == (0.0, math.inf)
+    # a control of 1 Mohm does fill it: up to 2.197 x 1.1 uF x 1.047 Mohm
+    wide = [p for p in catalogue.of(Control) if p.resistance == 1e6][:1]
+    reach = Grid(spec, caps, wide, rs).reach(Room(0.0, 1.0, 1.0, 0.0))
+    assert reach.longest == pytest.approx(math.log(9) * 1.1e-6 * 1.047e6)
+
+
+@pytest.mark.parametrize("cover", ["nominal", "worst-case"])
+def test_where_two_ranges_meet(catalogue: Catalogue, spec_of: Callable, cover: str) -> None:
+    spec = spec_of(f"glide: {{shortest: 1 ms, longest: 1 s, ranges: 2, measure: time-constant, cover: {cover}}}")
+    one, two = (catalogue.parts[f"film-pet-5mm-63v-{value}"] for value in ("100n", "1u0"))
+    cap = Arrangement((one, two), switched=True)
+    pot = next(p for p in catalogue.of(Control) if p.resistance == 1e6)
+    r = next(r for r in catalogue.of(Resistor) if r.resistance == 1e3)
+    upper, lower = meeting(spec, cap, pot, r)
+    if cover == "nominal":
+        assert (upper, lower) == pytest.approx((100e-9 * 1.001e6, 1.1e-6 * (1e3 + pot.end)))
+    else:
+        c_low, c_high = 100e-9 * (1 - one.tolerance), 1.1e-6 * (1 + cap.tolerance)
+        r_low, r_high = 1e3 * (1 - r.tolerance), 1e3 * (1 + r.tolerance)
+        assert upper == pytest.approx(c_low * (r_low + 1e6 * (1 - pot.tolerance)))
+        assert lower == pytest.approx(c_high * (r_high + pot.end_high))

@@ -9,12 +9,23 @@ import pytest
 from modgen.analysis.model import (
     AccuracyBudget,
     Analyses,
+    Backfeed,
     Bound,
     ChannelGlide,
+    Dissipation,
     Headroom,
     Interval,
+    Matching,
+    MissingRail,
+    Noise,
+    NoiseTerm,
     RailPower,
+    ReversedSupply,
+    Short,
+    Stability,
     Term,
+    Travel,
+    TravelPoint,
 )
 from modgen.catalogue.records import (
     Amplifier,
@@ -202,6 +213,59 @@ def netlist_of(placed: list[Placed], title: str) -> Netlist:
     return Netlist(title, tuple(parts), tuple(Net(n, tuple(sorted(pins))) for n, pins in sorted(nets.items())))
 
 
+def more_analyses(channels: int) -> dict:
+    """What the newer analyses say of such a board; every channel the same."""
+    every = range(1, channels + 1)
+    points = (TravelPoint(0.0, Interval(5e-3, 4e-3, 6e-3)), TravelPoint(1.0, Interval(2.2, 1.7, 2.8)))
+    straight = tuple(TravelPoint(p.rotation, Interval(9 * p.time.nominal, 0.0, 0.0)) for p in points)
+    terms = (NoiseTerm("glide resistance", 60e-9, "2.2 kΩ"), NoiseTerm("voltage noise, output buffer", 2.5e-6, "U1B"))
+    volts = (12.6, 25.2)
+    return {
+        "matching": (Matching(0.5, 0.0, 0.1, 0.2, 0.5, 10000),) if channels > 1 else (),
+        "travel": tuple(Travel(k, f"R{5 * k - 1}", "log", points, 0.9, 0.25, 0.01, 0.09) for k in every),
+        "tapers": (
+            Travel(1, "R4", "linear", straight, 0.7, 0.04, 0.1, 0.2),
+            Travel(1, "R4", "log", points, 0.9, 0.25, 0.01, 0.09),
+        ),
+        "stability": tuple(
+            s
+            for k in every
+            for s in (
+                Stability(
+                    "input buffer", k, f"U{k}A", (f"U{k}", f"R{5 * k - 2}"), 2.0, 100.0, 3.7e6, 0.0032, 72.8, 45.0,
+                    ((0.0, 73.0), (2.0, 72.8)),
+                ),
+                Stability(
+                    "output buffer, resistor outside the loop", k, f"U{k}B", (f"U{k}", f"R{5 * k}"), 1e-10, 400.0,
+                    2.4e6, 0.25, 40.5, 45.0, ((0.0, 72.4), (1e-10, 40.5)),
+                ),
+            )
+        ),
+        "noise": tuple(
+            Noise(k, end, terms, 20.0, 20e3, 64e-9, 2.6e-6, 631e-6) for k in every for end in ("fast", "slow")
+        ),
+        "shorts": tuple(
+            Short(k, f"U{k}B", f"CH{k}_OUT", f"R{5 * k}", against, volt, 10e-3, 60e-3, 0.4, power, 0.5)
+            for k in every
+            for against, volt, power in zip(("0 V", "another output"), volts, (0.2, 0.6), strict=True)
+        ),
+        "dissipation": tuple(Dissipation(f"U{k}", 0.12, 0.4, "0 V", 0.52, 0.68) for k in every),
+        "reversed_supply": tuple(
+            ReversedSupply(rail, ref, bus, True, 12.6, 1e-3, -0.6, 25.2, 40.0)
+            for rail, ref, bus in (("V+", "D1", -12.6), ("V-", "D2", 12.6))
+        ),
+        "missing_rails": (
+            MissingRail("V+", -12.6, -0.4, 1.2e-3, "C7", 12.6, 0.4, 1.0),
+            MissingRail("V-", 0.4, 12.6, 1.2e-3, "", 0.0, 0.0, 1.0),
+        ),
+        "powered_off": (
+            *(Backfeed("input", f"U{k}A", (f"U{k}", f"R{5 * k - 3}"), 12.6, 1.2e-3, 5e-3) for k in every),
+            Backfeed("output", "U1B", ("U1",), 12.6, float("inf"), 60e-3),
+            *(Backfeed("rail", rail, ("U1",), 12.6, 3e-3, 2e-3) for rail in ("V+", "V-")),
+        ),
+    }  # fmt: skip
+
+
 def make_job(
     channels: int = 2,
     *,
@@ -255,9 +319,12 @@ def make_job(
         for k in range(1, channels + 1)
     )  # fmt: skip
     term = Term("scale", "output resistor into load", 0.0033, "R/(R+load)", "divider", "a smaller resistor")
+    drift = Term("drift", "bias current, output buffer", 3e-3, "dIb (Rcontrol + Riso)", "U1B", "a smaller control")
     analyses = Analyses(
         glides,
-        AccuracyBudget((term,), 0.0033, 0.0033, 0.02, 0.02, 0.014, 0.2, 0.03, 65.0),
+        AccuracyBudget(
+            (term,), 0.0033, 0.0033, 0.02, 0.02, 0.014, 0.2, 0.03, 65.0, 0.021, 15.0, (drift,), 4e-3, 3.5e-3
+        ),
         (Headroom("input buffer", "common mode", ("U1",), -5.0, 5.0, -7.1, 7.1),),
         (
             RailPower("V+", "D1", 12.0, 11.4, 12.6, 11.75, 11.1, 12.4, 5.6e-3, 10e-3, 20e-3),
@@ -267,6 +334,7 @@ def make_job(
         boards_inside=0.9604,
         boards_inside_low=0.9409,
         boards_inside_high=0.9801,
+        **more_analyses(channels),
     )
     if report is None:
         report = Report((), (Checked("capacitor-voltage", 8, 0.37, "C1 at 63 %"),))

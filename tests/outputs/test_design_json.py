@@ -1,6 +1,15 @@
 import json
+from dataclasses import fields
+from pathlib import Path
 
+import pytest
+
+from modgen.analysis.accuracy import LEFT_OUT
+from modgen.analysis.montecarlo import DISTRIBUTIONS, SEED
+from modgen.chain import run
 from modgen.outputs.design_json import design_json, findings_json, tidy
+
+SPECS = sorted((Path(__file__).parents[2] / "specs").glob("*.yaml"))
 
 
 def load(job):
@@ -24,6 +33,15 @@ def test_keys_in_their_order(job):
         "rails",
         "accuracy",
         "headroom",
+        "monte_carlo",
+        "matching",
+        "travel",
+        "tapers",
+        "stability",
+        "noise",
+        "shorts",
+        "dissipation",
+        "supply_states",
         "bounds",
     ]
 
@@ -77,6 +95,88 @@ def test_what_has_no_bound_is_null(job):
     bounds = {b["net"]: b for b in load(job)["bounds"]}
     assert bounds["FLOATING"] == {"net": "FLOATING", "low": None, "high": None}
     assert bounds["CH1_GLIDE"]["high"] == 12.6
+
+
+def test_terms_carry_formula_source_and_remedy_and_the_largest_is_named(job):
+    accuracy = load(job)["accuracy"]
+    assert accuracy["terms"][0] == {
+        "kind": "scale",
+        "name": "output resistor into load",
+        "worst": 0.0033,
+        "formula": "R/(R+load)",
+        "source": "divider",
+        "remedy": "a smaller resistor",
+    }
+    assert [term["kind"] for term in accuracy["terms"]] == ["scale", "drift"]
+    assert accuracy["largest"] == {
+        "scale": "output resistor into load",
+        "offset": None,
+        "drift": "bias current, output buffer",
+    }
+    assert accuracy["left_out"] == list(LEFT_OUT)
+
+
+def test_offset_over_temperature(job):
+    accuracy = load(job)["accuracy"]
+    assert accuracy["offset"] == {
+        "worst": 0.02,
+        "rss": 0.014,
+        "budget": 0.2,
+        "cold": 0.021,
+        "cold_temperature": 15.0,
+        "hot": 0.03,
+        "hot_temperature": 65.0,
+    }
+    assert accuracy["drift"] == {"worst": 4e-3, "rss": 3.5e-3}
+
+
+def test_monte_carlo_says_what_it_drew_from(job):
+    assert load(job)["monte_carlo"] == {"distributions": DISTRIBUTIONS, "seed": SEED, "boards": 10000}
+
+
+def test_stability_has_its_sweep_and_the_unit_of_its_loads(job):
+    first, second = load(job)["stability"][:2]
+    assert (first["stage"], first["load_unit"], first["measured"], first["limit"]) == (
+        "input buffer",
+        "ohm",
+        72.8,
+        45.0,
+    )
+    assert first["sweep"] == [{"load": 0.0, "phase_margin": 73.0}, {"load": 2.0, "phase_margin": 72.8}]
+    assert (second["load_unit"], second["margin"]) == ("F", -0.1)
+
+
+def test_supply_states_with_margins_and_null_where_nothing_limits(job):
+    states = load(job)["supply_states"]
+    assert list(states) == ["reversed", "missing_rails", "powered_off"]
+    assert states["reversed"][0]["margin"] == 0.37
+    assert states["missing_rails"][0]["capacitor"] == "C7"
+    straight = next(b for b in states["powered_off"] if b["subject"] == "output")
+    assert (straight["measured"], straight["margin"]) == (None, None)
+
+
+@pytest.mark.parametrize("path", SPECS, ids=lambda path: path.stem)
+def test_nothing_that_was_computed_is_left_out(path):
+    """Every name of every field of the analyses is a key somewhere in the file."""
+    job = run(path)
+    data = load(job)
+
+    def keys(value):
+        if isinstance(value, dict):
+            return set(value).union(*map(keys, value.values()))
+        return set().union(*map(keys, value)) if isinstance(value, list) else set()
+
+    found = keys(data)
+    for name in ("matching", "travel", "stability", "noise", "shorts", "dissipation"):
+        values = getattr(job.analyses, name)
+        assert len(data[name]) == len(values) > 0
+        assert {field.name for value in values for field in fields(value)} <= found
+    for name in ("reversed_supply", "missing_rails", "powered_off"):
+        held = data["supply_states"][name.removesuffix("_supply")]
+        assert len(held) == len(getattr(job.analyses, name))
+        for shown, value in zip(held, getattr(job.analyses, name), strict=True):
+            assert {field.name for field in fields(value)} | {"margin"} == set(shown)
+    assert len(data["accuracy"]["terms"]) == len(job.analyses.accuracy.terms) + len(job.analyses.accuracy.drift)
 
 
 def test_findings_have_exactly_the_promised_fields(faulty):

@@ -4,8 +4,11 @@ from __future__ import annotations
 
 import re
 from dataclasses import replace
+from html import escape
 from pathlib import Path
 
+from modgen.analysis.accuracy import LEFT_OUT
+from modgen.analysis.montecarlo import DISTRIBUTIONS
 from modgen.catalogue.records import Evidence
 from modgen.chain import run
 from modgen.design.model import Choice
@@ -46,7 +49,8 @@ def test_verdict_comes_first_with_its_counts_and_errors(faulty):
 def test_sections_in_the_order_of_a_review(faulty):
     page = review_html(faulty).decode()
     order = [
-        "spec", "choices", "findings", "rules", "glide", "accuracy", "headroom", "rails", "waivers", "bom", "evidence",
+        "spec", "choices", "findings", "rules", "glide", "travel", "accuracy", "noise", "stability", "headroom",
+        "rails", "shorts", "supply", "waivers", "bom", "evidence",
     ]  # fmt: skip
     places = [page.index(f'<h2 id="{name}"') for name in order]
     assert places == sorted(places)
@@ -201,15 +205,43 @@ def test_glide_is_nominal_worst_case_and_share(job):
 
 
 def test_accuracy_terms_and_sums_against_the_budget(job):
-    sums, scale = accuracy_tables(job)
+    sums, _, _, scale, _ = accuracy_tables(job)
     assert cells(sums) == [
         ("Scale", "0.33 %", "0.33 %", "2 %", "83.5 %"),
         ("Offset", "20 mV", "14 mV", "200 mV", "90 %"),
     ]
-    assert plain(sums.note).startswith("At 65 °C the offset is up to 30 mV.")
+    assert sums.note == "An offset can be tuned out; a scale error cannot."
     assert cells(scale) == [
         ("output resistor into load", "0.33 %", "R/(R+load)", "divider", "a smaller resistor"),
     ]
+
+
+def test_offset_over_temperature_and_its_drift(job):
+    table = accuracy_tables(job)[1]
+    assert cells(table) == [
+        ("Offset at 15 °C", "21 mV", "-"),
+        ("Offset at 25 °C", "20 mV", "14 mV"),
+        ("Offset at 65 °C", "30 mV", "-"),
+        ("Drift from 15 °C to 65 °C", "4 mV", "3.5 mV"),
+    ]
+    assert plain(table.note).endswith("at 1 V per octave the worst case of it is 4.8 cents.")
+
+
+def test_largest_terms_say_what_would_reduce_them(job):
+    largest, _, drift = accuracy_tables(job)[2:]
+    assert cells(largest) == [
+        ("Scale", "output resistor into load", "0.33 %", "100 %", "a smaller resistor"),
+        ("Drift", "bias current, output buffer", "3 mV", "75 %", "a smaller control"),
+    ]
+    assert drift.caption == "What moves the offset between 15 °C and 65 °C, worst first"
+
+
+def test_page_says_what_was_drawn_from_and_what_is_left_out(job):
+    page = plain(review_html(job).decode())
+    assert page.count(DISTRIBUTIONS) == 2
+    accuracy = page[page.index('<h2 id="accuracy"') : page.index('<h2 id="noise"')]
+    for line in LEFT_OUT:
+        assert f"<li>{escape(line).replace('&#x27;', '&#39;')}</li>" in accuracy
 
 
 def test_cents_stand_beside_a_scale_in_per_cent(job):
@@ -227,7 +259,7 @@ def test_terms_are_listed_worst_first(job):
     term = job.analyses.accuracy.terms[0]
     terms = (replace(term, name="small", worst=1e-4), term, replace(term, name="large", worst=0.01))
     changed = replace(job, analyses=replace(job.analyses, accuracy=replace(job.analyses.accuracy, terms=terms)))
-    assert [row[0] for row in cells(accuracy_tables(changed)[1])] == ["large", "output resistor into load", "small"]
+    assert [row[0] for row in cells(accuracy_tables(changed)[3])] == ["large", "output resistor into load", "small"]
 
 
 def test_headroom_and_rails(job):

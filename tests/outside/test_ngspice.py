@@ -1,7 +1,8 @@
 """The emitted deck, run by ngspice, gives the glide times of design.json within 1 %.
 
-Run live on every shipped spec where ngspice is installed. One case is kept beside this file, in ``ngspice/``:
-the deck, and what ngspice of the stated version printed for it; it is compared also where there is no ngspice.
+Run live on every shipped spec, and on one with range switches, where ngspice is installed. One case is kept beside
+this file, in ``ngspice/``: the deck, and what ngspice of the stated version printed for it; it is compared also where
+there is no ngspice.
 To make it again after the deck has changed on purpose: ``python tests/outside/test_ngspice.py`` and read the
 difference.
 """
@@ -21,9 +22,12 @@ import pytest
 
 HERE = Path(__file__).resolve().parent
 ROOT = HERE.parents[1]
-SPECS = sorted((ROOT / "specs").glob("*.yaml"))
+#: what is shipped, and what no shipped spec has
+SPECS = [*sorted((ROOT / "specs").glob("*.yaml")), HERE / "ngspice" / "two-range-lag.yaml"]
 KEPT = HERE / "ngspice" / "four-lane-pitch-lag"
 POSITIONS = ("shortest", "middle", "longest")
+#: with a range switch: where the ranges meet, as (range, position) of design.json
+MEETING = {"fast_longest": (0, "longest"), "slow_shortest": (1, "shortest")}
 
 pytestmark = pytest.mark.source("ngspice 39, batch run of the emitted deck; kept run in tests/outside/ngspice/")
 
@@ -66,8 +70,13 @@ def printed_lines(text: str) -> dict[tuple[int, str], float]:
 
 def compare(found: dict[tuple[int, str], float], data: dict) -> None:
     channels = [channel["channel"] for channel in data["channels"]]
-    assert sorted(found) == sorted((n, what) for n in channels for what in (*POSITIONS, "error"))
+    ranged = {channel["channel"] for channel in data["channels"] if channel["ranges"]}
+    expected_lines = [(n, what) for n in channels for what in (*POSITIONS, "error")]
+    assert sorted(found) == sorted([*expected_lines, *((n, what) for n in ranged for what in MEETING)])
     for channel in data["channels"]:
+        for what, (index, position) in MEETING.items() if channel["ranges"] else ():
+            expected = channel["ranges"][index][position]["nominal"]
+            assert found[channel["channel"], what] == pytest.approx(expected, rel=0.01), (channel, what)
         for position in POSITIONS:
             expected = channel[position]["nominal"]
             assert found[channel["channel"], position] == pytest.approx(expected, rel=0.01), (channel, position)
@@ -78,7 +87,8 @@ def compare(found: dict[tuple[int, str], float], data: dict) -> None:
 
 
 def test_there_are_specs_to_run():
-    assert len(SPECS) >= 4
+    assert len(SPECS) >= 5
+    assert any(channel["ranges"] for channel in design(SPECS[-1])["channels"])
 
 
 @pytest.mark.parametrize("path", SPECS, ids=lambda path: path.stem)

@@ -182,7 +182,7 @@ class TestFindings:
         m = Measurement(("R1",), "w", 2.0, 1.0, "W", -1.0, fault("hot"), ("A",), "rails.positive")
         (finding,) = judge(EMPTY, catalogue, rules=[make("hot", [m])]).findings
         assert finding == Finding(
-            "hot", "error", ("R1",), "hot", "because", "mend it", 2.0, 1.0, "W", "", ("A",), "rails.positive"
+            "hot", "error", ("R1",), "hot", "because", "mend it", 2.0, 1.0, "W", "", ("A",), "rails.positive", -1.0
         )
 
     def test_text_with_and_without_a_place(self):
@@ -238,13 +238,77 @@ class TestWaivers:
         assert not report.cleared
 
     def test_the_whole_message_of_a_stale_one(self, catalogue, example):
-        found = example("start from: lane\nspec: waive idle-amplifier U1 U2")
+        found = example("start from: lane\nspec: waive idle-amplifier U1 D1")
         (finding,) = judge(found.netlist, catalogue, found.spec).findings
         assert finding_text(finding) == (
-            "warning: the waiver of idle-amplifier on U1, U2 waives nothing [stale-waiver]\n"
+            "warning: the waiver of idle-amplifier on U1, D1 waives nothing [stale-waiver]\n"
             "    why: left in the spec it would hide the next finding of that kind\n"
             "    fix: take it out of the spec"
         )
+
+    @pytest.mark.parametrize(
+        ("changes", "message", "fix"),
+        [
+            (
+                "spec: waive idle-amplifier U2",
+                "the waiver of idle-amplifier on U2 waives nothing, and U2 is not on the board",
+                "take it out of the spec",
+            ),
+            (
+                "spec: waive idle-amplifier U1 U2 U3",
+                "the waiver of idle-amplifier on U1, U2, U3 waives nothing, and U2 and U3 are not on the board",
+                "take it out of the spec",
+            ),
+            (
+                "J2 TN=\nspec: waive unconnected-pin J2 J9",
+                "the waiver of unconnected-pin on J2, J9 names J9, which is not on the board",
+                "take J9 out of it",
+            ),
+            (
+                "J2 TN=\nspec: waive unconnected-pin J2 J3 R5",
+                "the waiver of unconnected-pin on J2, J3, R5 waives nothing on J3 and R5",
+                "take J3 and R5 out of it",
+            ),
+            (
+                "J2 TN=\nspec: waive unconnected-pin J9 J3 J2",
+                "the waiver of unconnected-pin on J9, J3, J2 waives nothing on J3, and J9 is not on the board",
+                "take J9 and J3 out of it",
+            ),
+        ],
+    )
+    def test_parts_that_are_gone_or_have_no_such_fault_any_more(self, catalogue, example, changes, message, fix):
+        found = example(f"start from: lane\n{changes}")
+        report = judge(found.netlist, catalogue, found.spec)
+        (finding,) = (f for f in report.findings if f.rule == "stale-waiver")
+        assert finding_text(finding) == (
+            f"warning: {message} [stale-waiver]\n"
+            "    why: left in the spec it would hide the next finding of that kind\n"
+            f"    fix: {fix}"
+        )
+        # what the waiver does cover it still covers
+        assert all(f.waived for f in report.findings if f.rule == "unconnected-pin")
+
+    def test_a_part_that_is_gone_is_told_though_the_rule_was_not_run(self, catalogue, example, by_name):
+        found = example("start from: lane\nspec: waive idle-amplifier U1 U9")
+        (finding,) = judge(found.netlist, catalogue, found.spec, [by_name["stale-waiver"]]).findings
+        assert finding.message == "the waiver of idle-amplifier on U1, U9 names U9, which is not on the board"
+        assert finding.fix == "take U9 out of it"
+
+    def test_a_part_that_is_faulted_for_not_being_there_can_be_waived(self, catalogue, example, by_name):
+        found = example("start from: lane\nspec: waive missing J9")
+        missing = make("missing", [Measurement(("J9",), "J9", fault=fault())])
+        (finding,) = judge(found.netlist, catalogue, found.spec, [missing, by_name["stale-waiver"]]).findings
+        assert (finding.rule, finding.waived) == ("missing", "for the example")
+
+    def test_an_internal_error_cannot_be_waived(self, catalogue, example, by_name):
+        found = example("start from: lane\nspec: waive broken\nspec: waive internal-error")
+        rules = [make("broken", ZeroDivisionError("division by zero")), by_name["stale-waiver"]]
+        with pytest.raises(InternalError, match=r"^rule broken crashed: ZeroDivisionError: division by zero$") as error:
+            judge(found.netlist, catalogue, found.spec, rules)
+        # nothing is said of the waiver of the crashed rule; the other is of a rule that does not exist
+        assert [f.message for f in error.value.report.findings] == [
+            "a waiver names the rule 'internal-error', which does not exist"
+        ]
 
     def test_the_whole_message_of_a_misspelt_one(self, catalogue, example):
         found = example("start from: lane\nspec: waive idle-amplifer")

@@ -57,6 +57,12 @@ SPECS = {
     "glide: {shortest: 10 ms, longest: 1 s}\nsignal: {span: ±8 V}\nbuild: {mount: surface}",
     "15 V, 10 V span": "channels: 4\njacks: 8\nrails: {positive: 15 V, negative: -15 V}\n"
     "glide: {shortest: 10 ms, longest: 1 s}\nsignal: {span: ±10 V}",
+    "two ranges": "channels: 2\njacks: 4\nrails: {positive: 12 V, negative: -12 V}\n"
+    "glide: {shortest: 1 ms, longest: 12 s, ranges: 2, cover: worst-case}",
+    "two ranges for pitch, inside the loop": "channels: 3\njacks: 6\nrails: {positive: 12 V, negative: -12 V}\n"
+    "glide: {shortest: 1 ms, longest: 2 s, ranges: 2}\nsignal: {pitch: true}\noutput: {protection: inside}",
+    "two ranges for surface mount, single 12 V": "channels: 2\njacks: 4\nrails: {positive: 12 V, negative: 0 V}\n"
+    "glide: {shortest: 1 ms, longest: 2 s, ranges: 2}\nsignal: {span: 0 V to 5 V}\nbuild: {mount: surface}",
     "unequal rails": "channels: 2\njacks: 4\nrails: {positive: 15 V, negative: -12 V}\n"
     "glide: {shortest: 10 ms, longest: 1 s}",
     "LF35x": "channels: 3\njacks: 6\nrails: {positive: 12 V, negative: -12 V}\n"
@@ -79,6 +85,10 @@ SPECS = {
     "glide: {shortest: 10 ms, longest: 1 s, measure: settle}\nbuild: {prefer: accuracy}",
 }
 
+#: what is true of a module all the same: with 160 ohm before a cable the TLV915x may ring if its output resistance is
+#: double the one that is known, and the scale budget leaves no room for more
+WARNED = {"a load so low that a short draws more than is usual": "warning capacitive-load "}
+
 
 def said(path, catalogue) -> list[str]:
     spec = read_spec(path)
@@ -99,7 +109,9 @@ def test_no_false_alarm(name, tmp_path, catalogue):
     path = tmp_path / "spec.yaml"
     path.write_text(f"module: {name}\n{SPECS[name]}\n", encoding="utf-8")
     found = said(path, catalogue)
-    assert only_the_share(found), "\n".join(found)
+    true = [line for line in found if name in WARNED and line.startswith(WARNED[name])]
+    assert bool(true) == (name in WARNED)
+    assert only_the_share([line for line in found if line not in true]), "\n".join(found)
 
 
 @pytest.mark.parametrize("path", SHIPPED, ids=lambda path: path.stem)

@@ -51,6 +51,7 @@ glide:
   within: 3 cents
   cover: worst-case
   taper: reverse-log
+  ranges: 2
 normalling: chain
 signal: {span: -2 V to 8 V, source: 4k7, load: 1 MΩ, pitch: true}
 accuracy: {scale: 3 cents, offset: 1 %}
@@ -79,7 +80,7 @@ waive:
         channels=3,
         jacks=Jacks(2, 3),
         rails=Rails(15.0, -15.0, 0.1),
-        glide=Glide(0.0015, 10.0, "settle", 2.0, 3 / 1200, "worst-case", "reverse-log"),
+        glide=Glide(0.0015, 10.0, "settle", 2.0, 3 / 1200, "worst-case", "reverse-log", 2),
         normalling="chain",
         signal=Signal(-2.0, 8.0, 4700.0, 1e6, True),
         accuracy=Accuracy(3 / 1200, 0.1),
@@ -93,7 +94,7 @@ waive:
         ),
     )
     assert spec.slug == "grosse-2-lag"
-    assert [w.place for w in spec.waive] == [Place("spec.yaml", n, 5) for n in (26, 31, 32)]
+    assert [w.place for w in spec.waive] == [Place("spec.yaml", n, 5) for n in (27, 32, 33)]
 
 
 def test_accuracy_follows_pitch_and_span(page: Page) -> None:
@@ -116,7 +117,7 @@ def test_default_texts_are_the_defaults_of_the_model(page: Page) -> None:
             if item.default is not dataclasses.MISSING:
                 assert getattr(section, item.name) == item.default, item.name
                 checked += 1
-    assert checked == 22
+    assert checked == 23
 
 
 def test_every_field_is_a_key_but_for_the_reader_s_own() -> None:

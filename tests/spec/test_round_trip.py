@@ -86,6 +86,7 @@ def pages(draw: st.DrawFn) -> dict[str, Any]:
                 some(
                     cover=st.sampled_from(["nominal", "worst-case"]),
                     taper=st.sampled_from(["linear", "log", "reverse-log"]),
+                    ranges=st.sampled_from([1, 2]),
                 )
             ),
         },
@@ -152,7 +153,14 @@ def test_resolved_states_every_default_in_the_words_of_the_page(page: Callable[.
         "channels": 4,
         "jacks": {"inputs": 4, "outputs": 4},
         "rails": {"positive": "12 V", "negative": "-12 V", "tolerance": "5 %"},
-        "glide": {"shortest": "5 ms", "longest": "2 s", "measure": "rise", "cover": "nominal", "taper": "log"},
+        "glide": {
+            "shortest": "5 ms",
+            "longest": "2 s",
+            "measure": "rise",
+            "cover": "nominal",
+            "taper": "log",
+            "ranges": 1,
+        },
         "normalling": "ground",
         "signal": {"span": "±5 V", "source": "1 kΩ", "load": "100 kΩ", "pitch": False},
         "accuracy": {"scale": "2 %", "offset": "200 mV", "temperature": "15 °C to 65 °C"},

@@ -53,7 +53,7 @@ def test_its_comments_state_the_defaults() -> None:
     every = sum(
         1 + len(keys_of(key.section) if key.kind == "section" and key.section else ()) for _, key in keys_of(Spec)
     )
-    assert len(stated.places) == every - len(SETTLING) == 38
+    assert len(stated.places) == every - len(SETTLING) == 39
 
 
 def test_settling_can_be_taken_out_of_its_comments() -> None:

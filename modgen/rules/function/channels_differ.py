@@ -66,7 +66,8 @@ class ChannelsDiffer(Rule):
             fault=fault,
             key="channels",
         )
-        for place, read in PLACES.items():
+        places = PLACES | ({"range switch": _range_switch} if any(lane.switch for lane in lanes) else {})
+        for place, read in places.items():
             yield from _compared(place, [(lane.channel, read(board, lane)) for lane in lanes])
 
 
@@ -124,6 +125,13 @@ def _amplifiers(board: Board, lane: Lane) -> Reading:
 
 def _turning(board: Board, lane: Lane) -> Reading:
     return (lane.control,), "clockwise slower" if lane.wiring.rising else "clockwise faster"
+
+
+def _range_switch(board: Board, lane: Lane) -> Reading:
+    if lane.switch is None:
+        return (), "none"
+    kept = listed(_said(board, ref) for ref in lane.switch.keepers)
+    return (lane.switch.ref, *lane.switch.keepers), f"one (slow at {lane.switch.slow}, kept by {kept or 'nothing'})"
 
 
 PLACES: dict[str, Callable[[Board, Lane], Reading]] = {

@@ -31,8 +31,10 @@ class GlideRange(Rule):
         For each channel, by the spec's own measure: the glide at the fast end of the control is not
         longer than the shortest that is asked for, and at the slow end not shorter than the longest;
         with nominal values, or with every part at the wrong end of its tolerance when the spec says
-        ``cover: worst-case``. Where nominal values are asked for, the share of boards that reach the whole
-        range on every channel is worked out, and noted below 90 %.
+        ``cover: worst-case``. With a range switch the one is held against the fast range and the other
+        against the slow one, and the longest of the fast range is not below the shortest of the slow
+        one. Where nominal values are asked for, the share of boards that reach the whole range on every
+        channel is worked out, and noted below 90 %.
     Matters:
         It is what the module is for. What a control leaves at its end of travel often sets the shortest
         glide, and its tolerance the longest.
@@ -102,7 +104,7 @@ class GlideRange(Rule):
         )
 
     def _lane(self, glide: Glide, lane: Lane, values: LaneValues, factor: float) -> Iterator[Measurement]:
-        parts = (*lane.isolating, lane.control, *lane.capacitors)
+        parts = (*lane.isolating, lane.control, *lane.capacitors, *((lane.switch.ref,) if lane.switch else ()))
         worst = glide.cover == "worst-case"
         how = "over tolerance" if worst else "with nominal values"
 
@@ -131,7 +133,7 @@ class GlideRange(Rule):
             fault=fault,
             key="glide.shortest",
         )
-        slow = values.interval(1 - values.fastest, factor)
+        slow = values.interval(1 - values.fastest, factor, slow=True)
         longest = slow.low if worst else slow.nominal
         fault = None
         margin = above(longest, glide.longest)
@@ -139,7 +141,7 @@ class GlideRange(Rule):
             fault = Fault(
                 f"channel {lane.channel} glides no slower than {seconds(longest)} {how}; "
                 f"{seconds(glide.longest)} is asked for",
-                f"{lane.control} with {' and '.join(lane.capacitors)} reaches no further",
+                f"{lane.control} with {' and '.join(lane.slow_capacitors)} reaches no further",
                 "take a larger control or a larger capacitor",
             )
         yield Measurement(
@@ -152,4 +154,51 @@ class GlideRange(Rule):
             nets=(lane.glide_net,),
             fault=fault,
             key="glide.longest",
+        )
+        if lane.switch is None and glide.ranges < 2:
+            return
+        yield self._ranges(glide, lane)
+        if lane.switch is None:
+            return
+        ends = values.interval(1 - values.fastest, factor), values.interval(values.fastest, factor, slow=True)
+        upper, lower = (ends[0].low, ends[1].high) if worst else (ends[0].nominal, ends[1].nominal)
+        fault = None
+        margin = above(upper, lower)
+        if margin < 0:
+            fault = Fault(
+                f"channel {lane.channel} has nothing between {seconds(upper)}, the longest of its fast range, and "
+                f"{seconds(lower)}, the shortest of its slow one, {how}",
+                f"{' and '.join(lane.slow_capacitors)} together are too much beside what the fast range has",
+                "take a larger capacitor for the fast range, or a smaller one to switch in",
+            )
+        yield Measurement(
+            parts=parts,
+            what=f"channel {lane.channel} fast range to {seconds(upper)}, slow range from {seconds(lower)} {how}",
+            measured=upper,
+            limit=lower,
+            unit="s",
+            margin=margin,
+            nets=(lane.glide_net,),
+            fault=fault,
+            key="glide.ranges",
+        )
+
+    def _ranges(self, glide: Glide, lane: Lane) -> Measurement:
+        found = 2 if lane.switch else 1
+        fault = None
+        if found < glide.ranges:
+            fault = Fault(
+                f"channel {lane.channel} has {found} range; {glide.ranges} are asked for",
+                "no switch with a contact on its glide net changes the capacitance there",
+                "fit the range switch with its capacitor, or take glide.ranges out of the spec",
+            )
+        return Measurement(
+            parts=(lane.control, *((lane.switch.ref,) if lane.switch else ())),
+            what=f"channel {lane.channel}: {found} range{'s' * (found > 1)}, {glide.ranges} asked",
+            measured=float(found),
+            limit=float(glide.ranges),
+            unit="ranges",
+            nets=(lane.glide_net,),
+            fault=fault,
+            key="glide.ranges",
         )

@@ -2,15 +2,18 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator
 from dataclasses import dataclass
 
 from modgen.analysis.board import Board
 from modgen.analysis.model import Bound
+from modgen.analysis.power import rail_powers
+from modgen.analysis.shorts import GROUND, shorts
 from modgen.analysis.voltage import across, net_bounds
 from modgen.rules.contract import Context, Fault, Measurement, Rule
 from modgen.rules.support import left
-from modgen.spec.model import Rails
+from modgen.spec.model import Rails, Spec
 from modgen.units import format_quantity
 
 
@@ -28,7 +31,8 @@ class ResistorPower(Rule):
 
     Checks:
         Output resistors: the socket shorted to 0 V while the amplifier drives to a rail at the high end
-        of its tolerance, or as far as its greatest short-circuit current lets it. Resistors between a
+        of its tolerance, or as far as its greatest short-circuit current lets it; and, as a warning, to
+        another module's output at the opposite rail, behind the source impedance. Resistors between a
         socket and an amplifier's input: the whole rail from a powered neighbour while the module is
         off. All others through which a steady current can flow: the worst voltage between their nets.
     Matters:
@@ -87,6 +91,38 @@ class ResistorPower(Rule):
                 fault=fault,
                 key="output.protection" if "shorted" in load.when else "rails.positive",
             )
+        yield from _against_another_output(board, spec)
+
+
+def _against_another_output(board: Board, spec: Spec) -> Iterator[Measurement]:
+    """Output resistors with their socket on another module's output; those that a short to 0 V burns are left out."""
+    every = shorts(board, rail_powers(board, spec.rails, spec.signal), spec.signal)
+    burnt = {short.net for short in every if short.against == GROUND and left(short.measured, short.limit) < 0}
+    for short in every:
+        if short.against == GROUND or not short.resistor or short.net in burnt or not math.isfinite(short.limit):
+            continue
+        watts, most = format_quantity(short.measured, "power"), format_quantity(short.limit, "power")
+        when = f"with its socket on {short.against} at the opposite rail"
+        fault = None
+        margin = left(short.measured, short.limit)
+        if margin < 0:
+            fault = Fault(
+                f"{short.resistor} is rated {most} and can burn {watts} {when}",
+                "two outputs patched together stay so until somebody wonders why nothing comes out",
+                "fit a larger body, or a larger value (inside the feedback loop it costs no scale)",
+                level="warning",
+            )
+        yield Measurement(
+            parts=(short.resistor,),
+            what=f"{short.resistor}: {watts} of {most} {when}",
+            measured=short.measured,
+            limit=short.limit,
+            unit="W",
+            margin=margin,
+            nets=(short.net,),
+            fault=fault,
+            key="output.protection",
+        )
 
 
 def worst_load(board: Board, bounds: dict[str, Bound], rails: Rails, ref: str, ohms: float) -> Load:

@@ -1,10 +1,12 @@
-"""An input that a powered neighbour burns while the module is off."""
+"""An input or output that a powered neighbour burns while the module is off."""
 
 from __future__ import annotations
 
 import math
 from collections.abc import Iterator
 
+from modgen.analysis.model import Backfeed
+from modgen.analysis.supply_states import powered_off
 from modgen.rules.contract import Context, Fault, Measurement, Rule
 from modgen.rules.support import least_path, left, listed
 from modgen.units import format_quantity
@@ -12,14 +14,23 @@ from modgen.units import format_quantity
 #: Forward drop of the junction from an input to a supply pin [V]. Common practice, no source.
 JUNCTION = 0.6
 
+#: What is judged beside inputs: where the current goes, what to do about it, and the level.
+_WHAT = {
+    "output": ("into its output", "fit a larger output resistor", "warning"),
+    "jack": ("through its contacts", "fit larger resistors behind the socket", "warning"),
+}
+
 
 class InputClamp(Rule):
-    """With the module off, no input takes more current from a powered neighbour than it bears.
+    """With the module off, nothing takes more current from a powered neighbour than it bears.
 
     Checks:
         For each amplifier input that a socket leads to: the rail at the high end of its tolerance, less
         one junction, across the resistors on the way at the low end of theirs, against the greatest
-        current that the input's clamp bears.
+        current that the input's clamp bears. For each output of a lane: the same through its output
+        resistor, against the amplifier's greatest short-circuit current, which flows through the same
+        junctions; and for each socket all that its resistors take, against the rating of its contacts.
+        These two are warnings: outputs are patched to outputs by mistake only.
     Matters:
         A powered-off module sees its neighbours' rails through every cable; its amplifiers' inputs then
         conduct to the supply pins, and without a resistor in the way they burn or feed the whole board.
@@ -29,7 +40,9 @@ class InputClamp(Rule):
     Passes:
         start from: lane
     Limits:
-        Takes the neighbours to be on the same rails as this module. Static discharge is not judged.
+        Takes the neighbours to be on the same rails as this module. Static discharge is not judged, nor
+        what all sockets together put into a rail, which does no damage. An output without a resistor is
+        for output-short.
     References:
         10 mA, the usual limit of clamp current: NE5532, MCP6002 datasheets (from memory). Method:
         common practice.
@@ -82,3 +95,31 @@ class InputClamp(Rule):
                     fault=fault,
                     key="rails.positive",
                 )
+        for fed in powered_off(board, spec.rails):
+            if fed.subject in _WHAT and math.isfinite(fed.measured) and math.isfinite(fed.limit):
+                yield _driven(fed)
+
+
+def _driven(fed: Backfeed) -> Measurement:
+    """What a neighbour drives into an output or a socket."""
+    seen, most = format_quantity(fed.measured, "current"), format_quantity(fed.limit, "current")
+    what, fix, level = _WHAT[fed.subject]
+    fault = None
+    margin = left(fed.measured, fed.limit)
+    if margin < 0:
+        fault = Fault(
+            f"{fed.name} bears {most} {what} and takes {seen} from a powered neighbour",
+            f"while the module is off, that puts {format_quantity(fed.voltage, 'voltage', 4)} on the socket",
+            fix,
+            level=level,
+        )
+    return Measurement(
+        parts=fed.parts,
+        what=f"{fed.name}, of {most} {what}: {seen}",
+        measured=fed.measured,
+        limit=fed.limit,
+        unit="A",
+        margin=margin,
+        fault=fault,
+        key="rails.positive",
+    )

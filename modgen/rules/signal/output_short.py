@@ -23,8 +23,9 @@ class OutputShort(Rule):
     Checks:
         For each output socket, the resistors between it and the amplifier that drives it. With the
         socket at 0 V and the amplifier at a rail at the high end of its tolerance, or at its greatest
-        short-circuit current: the power in each resistor against 65 % of its rating, and, as a warning,
-        the current against 25 mA, where the scale budget leaves room for a resistor that keeps it.
+        short-circuit current: the power in each resistor against 65 % of its rating, and the current
+        against 25 mA, where the scale budget leaves room for a resistor that keeps it. Beyond 25 mA is a
+        warning, and an error where the amplifier's own limit comes before the resistor's.
     Matters:
         Every plug shorts tip to sleeve on its way in, and a forgotten one does so for hours. Without a
         resistor the package heats and the rail sags; with a small one the resistor does.
@@ -113,7 +114,8 @@ def _jack(board: Board, spec: Spec, jack: str, tip: str) -> Iterator[Measurement
             f"{jack} draws {amps} when it is shorted; {usual} is usual at most",
             f"it heats {section.package} and pulls at the rail, with every plug on its way in",
             f"fit {format_quantity(high / MOST_SHORT, 'resistance')} or more in place of {listed(refs)}",
-            level="warning",
+            # where the amplifier's own limit comes first, the resistor does nothing
+            level="error" if left(most, high / ohms) >= 0 else "warning",
         )
     yield Measurement(
         parts=(jack, *refs),

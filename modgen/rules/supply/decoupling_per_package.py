@@ -14,6 +14,9 @@ from modgen.units import format_quantity
 #: the bodies that such values come in. Common practice, no source.
 LEAST = 47e-9
 MOST = 1e-6
+#: Below this a capacitor counts for nothing [F]: 10 mA into a cable for a microsecond take half a volt from 20 nF.
+#: Worked out; what a rail may dip by is common practice, no source.
+USELESS = 20e-9
 
 Pin = tuple[str, str, str]  # package, pin, net
 
@@ -23,8 +26,9 @@ class DecouplingPerPackage(Rule):
 
     Checks:
         For each supply pin that is not on 0 V: one capacitor from its net to 0 V, between 47 nF and 1
-        uF. A capacitor that names its package in the field ``serves`` counts for that package; the
-        others are given to the pins that have none, on the same net; none counts twice.
+        uF; below 20 nF it is an error, otherwise a warning. A capacitor that names its package in the
+        field ``serves`` counts for that package; the others are given to the pins that have none, on the
+        same net; none counts twice.
     Matters:
         A rail is no short circuit at a megahertz: without a capacitor beside it a package rings or
         oscillates, and two packages on one capacitor work only if it happens to stand beside both.
@@ -84,7 +88,7 @@ class DecouplingPerPackage(Rule):
                 f"{format_quantity(LEAST, 'capacitance')} to {format_quantity(MOST, 'capacitance')}",
                 "too little charge for an output step" if limit == LEAST else "a body that large is too slow",
                 "fit 100 nF",
-                level="warning",
+                level="error" if value < USELESS else "warning",
             )
         return Measurement(
             parts=(package, capacitor),

@@ -10,7 +10,7 @@ from modgen.rules.support import above, ground_nets, listed, rails
 from modgen.units import format_quantity
 
 #: below this share of what there should be, it counts as none [-]. Our choice.
-NONE = 0.1
+NONE = 0.25
 
 
 class Reservoir(Rule):
@@ -18,7 +18,7 @@ class Reservoir(Rule):
 
     Checks:
         The capacitors between each rail, behind its diode, and 0 V, added up by their nominal values.
-        Below a tenth of 10 µF is an error, up to 10 µF a warning.
+        Below a quarter of 10 µF is an error, up to 10 µF a warning.
     Matters:
         A ribbon has a microhenry and every channel that slews pulls milliamperes through it; decoupling
         capacitors bridge nanoseconds, the reservoir the rest.

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from modgen.analysis.board import Board
+from modgen.analysis.supply_states import reversed_supply
 from modgen.catalogue.records import Diode
 from modgen.rules.contract import Context, Fault, Measurement, Rule
 from modgen.rules.support import Rail, left, rails
@@ -19,7 +20,9 @@ class ReversePolarity(Rule):
         Between the header and what each rail feeds stands a diode; it conducts from the header on the
         positive rail and towards it on the negative one. With a spec: its reverse voltage against the
         header turned round while the reservoirs are still charged (both rails together at the high end
-        of their tolerance, twice the rail on a single supply).
+        of their tolerance, twice the rail on a single supply); and, as a warning, what leaks through it
+        then, which flows on through the amplifiers the wrong way round, against the clamp current of
+        all their sections.
     Matters:
         The key of a shrouded header is not dependable in the field. Turned round without a diode, every
         package and electrolytic of the board is destroyed at once.
@@ -56,6 +59,8 @@ class ReversePolarity(Rule):
                 )
             for ref in rail.diodes:
                 yield from self._diode(board, context.spec, rail, ref)
+        if context.spec is not None:
+            yield from _leaks(board, context.spec)
 
     def _diode(self, board: Board, spec: Spec | None, rail: Rail, ref: str) -> Iterator[Measurement]:
         right = board.net(ref, "2" if rail.sign > 0 else "1") == rail.bus
@@ -98,4 +103,33 @@ class ReversePolarity(Rule):
             nets=rail.nets,
             fault=fault,
             key="rails.positive" if rail.sign > 0 else "rails.negative",
+        )
+
+
+def _leaks(board: Board, spec: Spec) -> Iterator[Measurement]:
+    """What passes through each diode that blocks a header turned round."""
+    # makers state what a junction bears at an input; the one at the supply pins is no smaller
+    bears = sum(section.record.clamp_current for section in board.sections)
+    for found in reversed_supply(board, spec.rails):
+        if not found.blocked or not found.leakage or bears <= 0:
+            continue
+        seen, most = format_quantity(found.leakage, "current"), format_quantity(bears, "current")
+        fault = None
+        margin = left(found.leakage, bears)
+        if margin < 0:
+            fault = Fault(
+                f"{found.diode} leaks {seen} with the header turned round; the amplifiers' junctions bear {most}",
+                "it flows from the rail through the supply pins of the amplifiers, the wrong way round",
+                "fit a diode that leaks less: a silicon rectifier, or a Schottky diode of a higher reverse voltage",
+                level="warning",
+            )
+        yield Measurement(
+            parts=(found.diode,),
+            what=f"{found.diode}: leaks {seen} of {most} with the header turned round",
+            measured=found.leakage,
+            limit=bears,
+            unit="A",
+            margin=margin,
+            fault=fault,
+            key="rails.positive" if found.rail == "V+" else "rails.negative",
         )

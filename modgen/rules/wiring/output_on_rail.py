@@ -15,8 +15,8 @@ class OutputOnRail(Rule):
     """No amplifier output is tied to 0 V or to a rail.
 
     Checks:
-        The net of each output, and nets behind links of up to 1 ohm: none is 0 V, a rail or a supply at
-        the header.
+        The net of each output, and nets behind links of up to 1 ohm and contacts of panel switches:
+        none is 0 V, a rail or a supply at the header.
     Matters:
         The output drives its whole short-circuit current into the supply for as long as the module is
         on, and the package heats.
@@ -45,18 +45,25 @@ class OutputOnRail(Rule):
             links = [
                 n for n in board.between(output, "resistor") if (v := board.value(n.ref)) is not None and v <= LINK
             ]
-            tied = next((n for n in links if n.net in supplies), None)
+            switched = [
+                (contact.ref, net)
+                for contact in board.contacts
+                for here, net in ((contact.common, contact.throw), (contact.throw, contact.common))
+                if here == output
+            ]
+            tied = next((end for end in ((n.ref, n.net) for n in links) if end[1] in supplies), None)
+            tied = tied or next((end for end in switched if end[1] in supplies), None)
             fault = None
             if output in supplies or tied is not None:
-                by = f" through {tied.ref}" if tied is not None and output not in supplies else ""
-                net = output if output in supplies or tied is None else tied.net
+                by = f" through {tied[0]}" if tied is not None and output not in supplies else ""
+                net = output if output in supplies or tied is None else tied[1]
                 fault = Fault(
                     f"the output of {section.name} (pin {section.pins[0]}) is tied to {net}{by}",
                     "it drives its short-circuit current into the supply, and the package heats",
                     f"take pin {section.pins[0]} of {section.package} off {net}",
                 )
             yield Measurement(
-                parts=(section.package,) if tied is None else (section.package, tied.ref),
+                parts=(section.package,) if tied is None else (section.package, tied[0]),
                 what=f"{section.name} drives {output}",
                 nets=(output,),
                 fault=fault,

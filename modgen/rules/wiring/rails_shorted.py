@@ -102,3 +102,16 @@ def _bridges(board: Board, supply: dict[str, str], why: str) -> Iterator[Measure
                     f"{ref} ({format_quantity(ohms, 'resistance')}) joins {ends}, two supplies", why, f"take {ref} out"
                 )
         yield Measurement(parts=(ref,), what=what, nets=nets, fault=fault)
+    for contact in board.contacts:
+        one, two = contact.common, contact.throw
+        if one in supply and two in supply and supply[one] != supply[two]:
+            yield Measurement(
+                parts=(contact.ref,),
+                what=f"{contact.ref} at {contact.position} between {one} and {two}",
+                nets=(one, two),
+                fault=Fault(
+                    f"{contact.ref} joins {one} and {two}, two supplies, at {contact.position}",
+                    "the supply is shorted, or its protection bridged, in that position",
+                    f"take {contact.ref} off one of them",
+                ),
+            )

@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 from modgen.analysis.board import Board, Section
 from modgen.rules.contract import Context, Fault, Measurement, Rule
-from modgen.rules.support import closed_contacts, groups, listed
+from modgen.rules.support import closed_contacts, groups, listed, switch_positions
 
 #: Outputs that may drive one node [outputs]. Source: what an output is.
 MOST_OUTPUTS = 1
@@ -15,12 +15,13 @@ LINK = 1.0
 
 
 class TiedOutputs(Rule):
-    """No two amplifier outputs are wired together, in no state of the sockets.
+    """No two amplifier outputs are wired together, in no state of the sockets and switches.
 
     Checks:
         How many outputs drive each node, first by the wires alone, then with every switch contact
-        closed as it is when nothing is plugged in. An output whose resistor is inside its feedback loop
-        drives the net behind the resistor; links of up to 1 ohm are wires.
+        of a socket closed as it is when nothing is plugged in, and the panel switches in each
+        position. An output whose resistor is inside its feedback loop drives the net behind the
+        resistor; links of up to 1 ohm are wires.
     Matters:
         Two outputs on one node push their short-circuit currents into each other as soon as they
         differ.
@@ -49,11 +50,16 @@ class TiedOutputs(Rule):
             if (ohms := board.value(step.ref)) is not None and ohms <= LINK
         ]
         wired = groups(links)
-        join = groups([*links, *((a, b) for _, a, b in closed_contacts(board))])
         nodes: dict[str, list[tuple[Section, str]]] = {}
-        for section in board.sections:
-            for net in driven(board, section):
-                nodes.setdefault(join(net), []).append((section, net))
+        for state in switch_positions(board):
+            join = groups([*links, *((a, b) for _, a, b in (*closed_contacts(board), *state))])
+            found: dict[str, list[tuple[Section, str]]] = {}
+            for section in board.sections:
+                for net in driven(board, section):
+                    found.setdefault(join(net), []).append((section, net))
+            for node, drivers in found.items():
+                # what fights in one position fights
+                nodes[node] = max(nodes.get(node, []), drivers, key=len)
         for node, drivers in sorted(nodes.items()):
             nets = tuple(sorted({net for _, net in drivers}))
             sections = list(dict.fromkeys(section for section, _ in drivers))
@@ -67,7 +73,9 @@ class TiedOutputs(Rule):
                         inside
                     )
                 else:
-                    where = f"joined by closed socket contacts (nets {listed(nets)})"
+                    switched = groups([*links, *((a, b) for _, a, b in closed_contacts(board))])
+                    by = "socket" if len({switched(net) for net in nets}) == 1 else "switch"
+                    where = f"joined by closed {by} contacts (nets {listed(nets)})"
                     fix = "take the switch contact off the output"
                 fault = Fault(
                     f"the outputs of {listed(s.name for s in sections)} are {where}",

@@ -124,7 +124,12 @@ class Board:
 
     def parts_of(self, kind: str) -> tuple[str, ...]:
         """References of one kind, by class and number."""
-        return tuple(ref for ref in self.refs if self.kind(ref) == kind)
+        return self._by_kind.get(kind, ())
+
+    @cached_property
+    def _by_kind(self) -> dict[str, tuple[str, ...]]:
+        kinds = {ref: self.kind(ref) for ref in self.refs}
+        return {kind: tuple(ref for ref in self.refs if kinds[ref] == kind) for kind in sorted(set(kinds.values()))}
 
     def with_role(self, role: str) -> tuple[str, ...]:
         """References whose ``role`` field says so; only for wording, never for judging."""

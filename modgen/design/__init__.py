@@ -14,6 +14,7 @@ from modgen.design.reasons import choices, role_reasons
 from modgen.design.supply import Ends, capacitor_for, price_at
 from modgen.problems import InputError, Problem
 from modgen.spec.model import Spec
+from modgen.units import format_quantity
 
 __all__ = ["Design", "make_design"]
 
@@ -100,21 +101,23 @@ def _values(spec: Spec, catalogue: Catalogue, outcome: Outcome) -> Values:
         idle_tie=stage.idle_tie,
         glide_parallel=beside if not network.capacitor.back_to_back and not switched else None,
         range_capacitor=beside if switched else None,
-        range_switch=_cheapest(spec, catalogue, Switch) if switched else None,
+        # a step over the whole span stands across its open contact, as it does across the control
+        range_switch=_cheapest(spec, catalogue, Switch, spec.signal.high - spec.signal.low) if switched else None,
         # what limits the current into an input limits it into the waiting capacitor as well
         range_keeper=stage.input_series if switched else None,
     )
 
 
-def _cheapest(spec: Spec, catalogue: Catalogue, kind: type[_T]) -> _T:
-    """The cheapest socket, header or switch; these are through-hole parts whatever the rest is."""
-    fit = catalogue.of(kind)
+def _cheapest(spec: Spec, catalogue: Catalogue, kind: type[_T], voltage: float = 0.0) -> _T:
+    """The cheapest socket, header or switch of a voltage [V]; through-hole parts whatever the rest is."""
+    fit = [part for part in catalogue.of(kind) if part.voltage >= voltage]
     if not fit:
+        rated = f" for {format_quantity(voltage, 'voltage')}" if voltage else ""
         raise InputError(
             [
                 Problem(
                     spec.place("build"),
-                    f"the catalogue has no {kind.__name__.lower()}",
+                    f"the catalogue has no {kind.__name__.lower()}{rated}",
                     "",
                     "add one with build.catalogue",
                 )

@@ -10,6 +10,8 @@ LEAST_HEADROOM = 0.25
 #: Share of its power rating that a resistor may take while an output is shorted: a fault that lasts as long as
 #: the plug is in, yet no normal state. Common practice, no source.
 SHORT_DERATING = 0.65
+#: What an electrolytic stands in reverse [V]: Vishay 038 RSU, document 28309.
+MOST_REVERSE = 1.0
 #: What a shorted output should not exceed where there is a choice: every plug shorts the socket on its way in, and
 #: more than this heats the package and pulls at the rail [A]. Common practice, no source.
 MOST_SHORT = 25e-3

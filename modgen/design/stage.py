@@ -27,6 +27,7 @@ from modgen.design.supply import (
 )
 from modgen.formulas.amplifier import common_mode_error, follower_gain_error, short_power
 from modgen.formulas.loading import loading_error, parallel
+from modgen.formulas.shorts import section_power
 from modgen.spec.model import Spec
 from modgen.units import format_quantity
 
@@ -223,10 +224,16 @@ def stages_of(spec: Spec, catalogue: Catalogue, forms: Sequence[Amplifier]) -> t
         return [], "no diode fits the rail: " + "; ".join(f"{d.key} {diode_fault(d, spec, current)}" for d in diodes)
     options: list[Stage] = []
     blocks: list[tuple[float, str]] = []
-    outputs = output_stages(spec, catalogue, amplifier)
+    outputs, heat = [], []
+    for output in output_stages(spec, catalogue, amplifier):
+        fault = _heat_fault(spec, packages, output)
+        if fault:
+            heat.append(fault)
+        else:
+            outputs.append(output)
     termination = list(terminators(spec, catalogue))
     if not outputs:
-        return [], "no output resistor in the catalogue survives a short at the output"
+        return [], heat[0] if heat else "no output resistor in the catalogue survives a short at the output"
     for diode in usable:
         drop = greatest_drop(diode, current)
         left = supply_left(spec, drop)
@@ -263,6 +270,20 @@ def stages_of(spec: Spec, catalogue: Catalogue, forms: Sequence[Amplifier]) -> t
     if blocks:
         return [], max(blocks)[1]
     return [], _budget_fault(spec, catalogue, amplifier, series, outputs)
+
+
+def _heat_fault(spec: Spec, packages: Sequence[Amplifier], output: OutputStage) -> str:
+    """Why a package gets too hot with one of its outputs shorted to 0 V; empty when it does not."""
+    ends = Ends.of(spec.rails)
+    for package in dict.fromkeys(packages):
+        short = section_power(ends.greatest, output.series.resistance, package.short_circuit_most)
+        total = package.sections * package.quiescent_max * ends.total_high + short
+        if total > package.dissipation:
+            return (
+                f"{package.key} turns {format_quantity(total, 'power')} into heat with an output shorted, and bears "
+                f"{format_quantity(package.dissipation, 'power')}"
+            )
+    return ""
 
 
 def _offset(spec: Spec, a: Amplifier, series: Resistor, terminator: Resistor, output: OutputStage) -> float:

@@ -132,6 +132,12 @@ def diode_fault(diode: Diode, spec: Spec, current: float) -> str:
             f"carries {format_quantity(diode.forward_current, 'current')}; a supply lead wants "
             f"{format_quantity(practice.LEAST_RECTIFIER, 'current')} for charging reservoirs and a shorted ribbon"
         )
+    drop = greatest_drop(diode, current)
+    if drop > practice.MOST_REVERSE:
+        return (
+            f"drops up to {_volts(drop)}; with the other rail missing the reservoir would be reversed by as much, "
+            f"and {_volts(practice.MOST_REVERSE)} is the most it stands"
+        )
     if diode.forward_current * practice.CURRENT_DERATING < current:
         return (
             f"carries {format_quantity(diode.forward_current, 'current')}; the rail draws "

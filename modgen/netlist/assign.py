@@ -17,6 +17,9 @@ NO_NET, OPEN = -2, -1
 #: cost of one part that differs at all, of each pin or aspect of it, and of a section in another package
 PART, DETAIL, ELSEWHERE = 1.0, 0.25, 0.3
 
+#: elements on one net that are tried for one that nothing agrees with; on a supply all are as good as the first
+MOST = 40
+
 
 @dataclass(frozen=True)
 class Assignment:
@@ -84,7 +87,7 @@ def assign(first: Graph, second: Graph, nets: Sequence[int]) -> Assignment:
         element = first.elements[one]
         near = set(called.get((element.ref, element.kind), ()))
         for slot, net in first.pins[one]:
-            near.update(at.get((element.kind, slot, nets[net] if net >= 0 else OPEN), ()))
+            near.update(at.get((element.kind, slot, nets[net] if net >= 0 else OPEN), [])[:MOST])
         for other in near:
             cost = pair_cost(first, second, nets, one, other)
             if cost < alone_cost(first, one) + alone_cost(second, other):

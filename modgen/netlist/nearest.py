@@ -21,10 +21,10 @@ HUB = 12
 ALIKE = 0.5
 #: starts, each with other choices where several nets look alike
 STARTS = 5
-#: cost that needs no second opinion: one part that differs in two things
-SIMPLE = PART + 2 * DETAIL
-#: trials to put wrong nets right
-TRIALS = 120
+#: cost that needs no second opinion: one part that differs in four things, or is gone
+SIMPLE = PART + 4 * DETAIL
+#: trials to put wrong nets right; and elements of all trials together, so that a file of any size comes to an end
+TRIALS, EFFORT = 120, 250_000
 #: net numbers of both circuits by colour
 Lots = dict[int, tuple[list[int], list[int]]]
 
@@ -43,12 +43,16 @@ def nearest_nets(first: Graph, second: Graph) -> tuple[list[int], Assignment]:
         The second circuit's net for each of the first (or ``NO_NET``), and the pairs of elements.
     """
     best = _settled(first, second, [second.number.get(name, NO_NET) for name in first.nets])
-    for turn in range(STARTS):
+    for turn in range(STARTS if _trials(first, second) == TRIALS else 1):
         if best[1].cost <= SIMPLE:
             break
         grown = _settled(first, second, _Growth(first, second, turn).grow())
         best = min(best, _repaired(first, second, *grown), key=lambda pair: pair[1].cost)
     return _repaired(first, second, *best)
+
+
+def _trials(first: Graph, second: Graph) -> int:
+    return min(TRIALS, EFFORT // (len(first.elements) + len(second.elements) + 1))
 
 
 def _settled(first: Graph, second: Graph, nets: list[int]) -> tuple[list[int], Assignment]:
@@ -64,7 +68,7 @@ def _settled(first: Graph, second: Graph, nets: list[int]) -> tuple[list[int], A
 
 def _repaired(first: Graph, second: Graph, nets: list[int], found: Assignment) -> tuple[list[int], Assignment]:
     """Exchange the images of nets that something is wrong with, as long as that helps."""
-    trials = TRIALS
+    trials = _trials(first, second)
     better = True
     while better and trials > 0 and found.cost:
         better = False
@@ -152,14 +156,13 @@ class _Growth:
 
     def _hubs(self) -> None:
         """Nets that much hangs on, by what hangs on them."""
-        profiles = [[Counter(name for name, _ in on) for on in graph.on] for graph in (self.first, self.second)]
+        profiles = [
+            {n: Counter(name for name, _ in on) for n, on in enumerate(graph.on) if _hub(on) and not graph.package(n)}
+            for graph in (self.first, self.second)
+        ]
         found = []
-        for net, mine in enumerate(profiles[0]):
-            for to, theirs in enumerate(profiles[1]):
-                if max(len(self.first.on[net]), len(self.second.on[to])) <= HUB and not _supplies(mine, theirs):
-                    continue
-                if self.first.package(net) or self.second.package(to):
-                    continue
+        for net, mine in profiles[0].items():
+            for to, theirs in profiles[1].items():
                 common = sum((mine & theirs).values()) / max(sum((mine | theirs).values()), 1)
                 if common >= ALIKE:
                     found.append((-common, self.first.nets[net] != self.second.nets[to], net, to))
@@ -332,6 +335,6 @@ class _Growth:
         return best[1] if best else None
 
 
-def _supplies(mine: Counter[str], theirs: Counter[str]) -> bool:
-    """Whether both nets are at a header or feed packages."""
-    return all(any(name.startswith(("header ", "package ")) for name in profile) for profile in (mine, theirs))
+def _hub(on: Sequence[tuple[str, int]]) -> bool:
+    """Whether a net has many pins, is at a header or feeds packages."""
+    return len(on) > HUB or any(name.startswith(("header ", "package ")) for name, _ in on)

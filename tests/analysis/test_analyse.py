@@ -50,9 +50,9 @@ def test_sixty_four_lanes_take_no_time(lanes, spec):
     bench = lanes(64)
     analyse(lanes().netlist(), bench.shelf, spec)
     draw_boards.cache_clear()
-    start = time.perf_counter()
+    start = time.process_time()
     analyse(bench.netlist(), bench.shelf, spec)
-    assert time.perf_counter() - start < 2.0
+    assert time.process_time() - start < 2.0
 
 
 def test_importing_does_not_load_numpy():

@@ -112,7 +112,7 @@ def test_prices_decide_what_is_cheapest(write_spec: Callable[..., Path], tmp_pat
     (tmp_path / "prices.csv").write_text(f"part,quantity,price\n{dear},1,99.5\n", encoding="utf-8")
     job = run(write_spec("order: {prices: prices.csv}"))
     assert job.design.values.glide.key != dear
-    whys = [why for choice in job.design.choices for _, why in choice.runners_up if "price" in why]
+    whys = [why for choice in job.design.choices for _, why in choice.runners_up if "prices" in why]
     assert whys
     assert all(
         why.endswith(" at your own prices, and the catalogue's invented ones where you give none") for why in whys

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import replace
 
 import pytest
 
-from modgen.catalogue import Catalogue
+from modgen.catalogue import Catalogue, Switch
 from modgen.design import make_design
 from modgen.problems import InputError, Problem
 
@@ -216,3 +217,14 @@ def test_ten_volts_through_a_jfet_pair_on_twelve(refused: Callable) -> None:
     problem = refused("signal: {span: ±10 V}", "build: {amplifier: TL07x}")
     assert problem.what == "amplifier 'TL07x' does not work in this module"
     assert problem.why == "TL07x: the input range at the negative rail is 2.92 V short behind 1n5818"
+
+
+def test_a_switch_whose_contacts_do_not_stand_the_step(catalogue: Catalogue, spec_of: Callable) -> None:
+    weak = {k: replace(p, voltage=9.9) if isinstance(p, Switch) else p for k, p in catalogue.parts.items()}
+    with pytest.raises(InputError) as error:
+        make_design(spec_of("glide: {shortest: 1 ms, longest: 2 s, ranges: 2}"), Catalogue(weak))
+    (problem,) = error.value.problems
+    assert (problem.what, problem.fix) == (
+        "the catalogue has no switch for 10 V",
+        "add one with build.catalogue",
+    )

@@ -212,6 +212,7 @@ def test_equals_brute_force(catalogue: Catalogue, spec_of: Callable, case: str, 
     assert (best.stage.type, parts) == expected
 
 
+@pytest.mark.slow
 def test_most_samples_hold_a_solution(catalogue: Catalogue, spec_of: Callable) -> None:
     """Otherwise the comparison above would compare nothing."""
     found = sum(

@@ -16,6 +16,7 @@ from types import MappingProxyType
 
 import pytest
 
+from modgen.catalogue import Catalogue
 from modgen.catalogue.records import Amplifier, Capacitor, Control, Resistor
 from modgen.catalogue.records import Part as Record
 from modgen.circuit.plan import plan_of
@@ -139,7 +140,7 @@ def module_of(catalogue, tmp_path_factory) -> Callable[[str], Module]:
         parts = catalogue.parts
         if name in QUADS:
             parts = {key: part for key, part in parts.items() if getattr(part, "sections", 4) == 4}
-        design = make_design(spec, replace(catalogue, parts=MappingProxyType(dict(parts))))
+        design = make_design(spec, Catalogue(MappingProxyType(dict(parts))))
         netlist = replace(plan_of(design, {}).netlist, library_messages=())
         keys = {part.field("part") for part in netlist.parts}
         return Module(name, spec, netlist, {key: catalogue.get(key) for key in sorted(keys)})

@@ -14,7 +14,7 @@ from modgen.rules.engine import judge
 from modgen.spec import read_spec
 
 SEED = 20
-FEW, MANY = 60, 500
+FEW, MANY = 40, 500
 #: share of specs that sizing must not refuse [-]: 300 of 500
 LEAST_BUILT = 0.6
 

@@ -49,6 +49,8 @@ class Board:
     netlist: Netlist
     #: (reference, record or None), in the netlist's order
     records: tuple[tuple[str, Record | None], ...]
+    #: (usual name, the file's own) of supply nets that are called otherwise there
+    own_names: tuple[tuple[str, str], ...] = ()
 
     @classmethod
     def of(cls, netlist: Netlist, catalogue: Records) -> Board:
@@ -71,7 +73,8 @@ class Board:
         for part in netlist.parts:
             key = part.field("part")
             found.append((part.ref, catalogue.get(key) if key else None))
-        return cls(named_rails(netlist, found), tuple(found))
+        named, own_names = named_rails(netlist, found)
+        return cls(named, tuple(found), own_names)
 
     # --- parts -----------------------------------------------------------------------------------
 
@@ -143,7 +146,14 @@ class Board:
         part = self.part(ref)
         if part.pins:
             return part.pins
-        return tuple(sorted(pin for owner, pin in self.netlist.net_of if owner == ref))
+        return self._connected.get(ref, ())
+
+    @cached_property
+    def _connected(self) -> dict[str, tuple[str, ...]]:
+        out: dict[str, list[str]] = {}
+        for owner, pin in sorted(self.netlist.net_of):
+            out.setdefault(owner, []).append(pin)
+        return {ref: tuple(pins) for ref, pins in out.items()}
 
     def channel(self, ref: str) -> int:
         """The ``channel`` field as a number, 0 when it is absent or not a number."""

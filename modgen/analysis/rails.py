@@ -21,7 +21,9 @@ GROUND, POSITIVE, NEGATIVE, BUS_POSITIVE, BUS_NEGATIVE = NAMES = ("0V", "V+", "V
 HEADER = {GROUND: ("3", "4", "5", "6", "7", "8"), BUS_POSITIVE: ("9", "10"), BUS_NEGATIVE: ("1", "2")}
 
 
-def named_rails(netlist: Netlist, records: Iterable[tuple[str, Record | None]]) -> Netlist:
+def named_rails(
+    netlist: Netlist, records: Iterable[tuple[str, Record | None]]
+) -> tuple[Netlist, tuple[tuple[str, str], ...]]:
     """The netlist with the supplies under their usual names, as far as it is plain which they are.
 
     Parameters
@@ -33,16 +35,17 @@ def named_rails(netlist: Netlist, records: Iterable[tuple[str, Record | None]]) 
 
     Returns
     -------
-    Netlist
-        The same netlist when every supply bears its name, or when none can be told.
+    tuple
+        The netlist, the same one when every supply bears its name or none can be told; and the nets that got a name,
+        as (usual name, the file's own).
     """
     if all(name in netlist.by_net for name in NAMES):
-        return netlist
+        return netlist, ()
     found = _found(netlist, dict(records))
     if not found:
-        return netlist
+        return netlist, ()
     nets = sorted_nets(Net(found.get(net.name, net.name), net.pins) for net in netlist.nets)
-    return replace(netlist, nets=nets)
+    return replace(netlist, nets=nets), tuple(sorted((name, own) for own, name in found.items()))
 
 
 def _found(netlist: Netlist, record_of: dict[str, Record | None]) -> dict[str, str]:

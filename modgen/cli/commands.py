@@ -73,9 +73,8 @@ def check(options: argparse.Namespace) -> int:
     from modgen.cli.screen import report_text
 
     if not options.spec and not options.netlist:
-        raise InputError(
-            [Problem(Place("modgen check"), "there is nothing to judge", "", "give a spec, a netlist with --netlist, or both")]
-        )
+        fix = "give a spec, a netlist with --netlist, or both"
+        raise InputError([Problem(Place("modgen check"), "there is nothing to judge", "", fix)])
     progress = _Progress(options.spec or options.netlist)
     try:
         if options.netlist:
@@ -94,7 +93,7 @@ def check(options: argparse.Namespace) -> int:
 
         _print_bytes(sarif_log(report, spec, options.netlist or "", folders=True))
     else:
-        print(report_text(report), end="")
+        print(report_text(report, bool(options.spec)), end="")
         missed = [checked.rule for checked in report.checked if not checked.judged]
         if not options.spec:
             print(f"no spec was given; {len(missed)} rules were not judged: {', '.join(missed)}")

@@ -23,12 +23,13 @@ MOST = 40
 
 @dataclass(frozen=True)
 class Assignment:
-    """Pairs of elements, those without a partner, and the cost of all that differs."""
+    """Pairs of elements, those without a partner, the cost of all that differs, and how much was looked at for that."""
 
     pairs: tuple[tuple[int, int], ...]
     missing: tuple[int, ...]
     extra: tuple[int, ...]
     cost: float
+    work: int
 
 
 def moved(first: Graph, second: Graph, nets: Sequence[int], one: int, other: int) -> tuple[int, bool]:
@@ -39,10 +40,7 @@ def moved(first: Graph, second: Graph, nets: Sequence[int], one: int, other: int
     left, right = want - have, have - want
     member = any(slot == MEMBER for slot, _ in left)
     return (
-        max(
-            sum(count for (slot, _), count in side.items() if slot != MEMBER)
-            for side in (left, right)
-        ),
+        max(sum(count for (slot, _), count in side.items() if slot != MEMBER) for side in (left, right)),
         member,
     )
 
@@ -103,12 +101,11 @@ def assign(first: Graph, second: Graph, nets: Sequence[int]) -> Assignment:
     missing = tuple(one for one in rest if one not in done)
     extra = tuple(other for other in spare if other not in used)
     total += sum(alone_cost(first, one) for one in missing) + sum(alone_cost(second, other) for other in extra)
-    return Assignment(tuple(sorted(pairs)), missing, extra, total)
+    work = len(first.elements) + len(second.elements) + 10 * len(found)
+    return Assignment(tuple(sorted(pairs)), missing, extra, total, work)
 
 
-def _exact(
-    first: Graph, second: Graph, nets: Sequence[int]
-) -> tuple[list[tuple[int, int]], list[int], list[int]]:
+def _exact(first: Graph, second: Graph, nets: Sequence[int]) -> tuple[list[tuple[int, int]], list[int], list[int]]:
     """Pairs that agree in everything; then what is left of both."""
     lots: dict[object, dict[int, str]] = defaultdict(dict)
     for other, element in enumerate(second.elements):
@@ -138,9 +135,7 @@ def _exact(
     return pairs, sorted(rest), sorted(other for lot in lots.values() for other in lot)
 
 
-def nets_of(
-    first: Graph, second: Graph, pairs: Sequence[tuple[int, int]], before: Sequence[int] = ()
-) -> list[int]:
+def nets_of(first: Graph, second: Graph, pairs: Sequence[tuple[int, int]], before: Sequence[int] = ()) -> list[int]:
     """The mapping of nets that most pins of these pairs speak for.
 
     Parameters

@@ -153,16 +153,12 @@ class _Account:
 
     def _missing(self, one: int) -> Difference:
         element = self.first.elements[one]
-        wires = dict.fromkeys(
-            self._intended(net) for slot, net in self.first.pins[one] if net >= 0 and slot != MEMBER
-        )
+        wires = dict.fromkeys(self._intended(net) for slot, net in self.first.pins[one] if net >= 0 and slot != MEMBER)
         return Difference("missing", intended=element.ref, aspects=_stated(element), wires=tuple(wires))
 
     def _extra(self, other: int) -> Difference:
         element = self.second.elements[other]
-        wires = dict.fromkeys(
-            self._found(net) for slot, net in self.second.pins[other] if net >= 0 and slot != MEMBER
-        )
+        wires = dict.fromkeys(self._found(net) for slot, net in self.second.pins[other] if net >= 0 and slot != MEMBER)
         return Difference("extra", element.ref, aspects=_stated(element), wires=tuple(wires))
 
     def _intended(self, net: int) -> Wire:

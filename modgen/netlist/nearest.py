@@ -8,7 +8,7 @@ names of nets decide only where nothing else does.
 from __future__ import annotations
 
 from collections import Counter, defaultdict
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 
 from modgen.netlist.assign import DETAIL, NO_NET, PART, Assignment, assign, moved, nets_of
 from modgen.netlist.elements import Graph
@@ -23,10 +23,14 @@ ALIKE = 0.5
 STARTS = 5
 #: cost that needs no second opinion: one part that differs in four things, or is gone
 SIMPLE = PART + 4 * DETAIL
-#: trials to put wrong nets right; and elements of all trials together, so that a file of any size comes to an end
-TRIALS, EFFORT = 120, 250_000
+#: trials to put the wrong nets of one start right
+TRIALS = 120
+#: elements and pairs that are looked at in all, so that any two circuits come to an end
+EFFORT = 400_000
 #: net numbers of both circuits by colour
 Lots = dict[int, tuple[list[int], list[int]]]
+#: a mapping of nets, and what it leaves unexplained
+Found = tuple[list[int], Assignment]
 
 
 def nearest_nets(first: Graph, second: Graph) -> tuple[list[int], Assignment]:
@@ -42,56 +46,74 @@ def nearest_nets(first: Graph, second: Graph) -> tuple[list[int], Assignment]:
     tuple
         The second circuit's net for each of the first (or ``NO_NET``), and the pairs of elements.
     """
-    best = _settled(first, second, [second.number.get(name, NO_NET) for name in first.nets])
-    for turn in range(STARTS if _trials(first, second) == TRIALS else 1):
-        if best[1].cost <= SIMPLE:
-            break
-        grown = _settled(first, second, _Growth(first, second, turn).grow())
-        best = min(best, _repaired(first, second, *grown), key=lambda pair: pair[1].cost)
-    return _repaired(first, second, *best)
+    return _Search(first, second).best()
 
 
-def _trials(first: Graph, second: Graph) -> int:
-    return min(TRIALS, EFFORT // (len(first.elements) + len(second.elements) + 1))
+class _Search:
+    """Tries mappings and keeps the cheapest; ``left`` says how much may still be looked at."""
 
+    def __init__(self, first: Graph, second: Graph) -> None:
+        self.first, self.second = first, second
+        self.left = EFFORT
 
-def _settled(first: Graph, second: Graph, nets: list[int]) -> tuple[list[int], Assignment]:
-    """Elements by nets, nets by elements, until nothing gets better."""
-    best = nets, assign(first, second, nets)
-    while True:
-        voted = nets_of(first, second, best[1].pairs, best[0])
-        found = assign(first, second, voted)
-        if found.cost >= best[1].cost:
-            return best
-        best = voted, found
+    def best(self) -> Found:
+        """By names, then by structure with one choice after another, as long as something simple is not found."""
+        best = self._settled([self.second.number.get(name, NO_NET) for name in self.first.nets])
+        for turn in range(STARTS):
+            if best[1].cost <= SIMPLE or (turn and self.left <= 0):
+                break
+            grown = self._settled(_Growth(self.first, self.second, turn).grow())
+            best = min(best, self._repaired(*grown), key=lambda found: found[1].cost)
+        return self._repaired(*best)
 
+    def _settled(self, nets: list[int]) -> Found:
+        """Elements by nets, nets by elements, until nothing gets better."""
+        best = nets, self._assigned(nets)
+        while best[1].cost:
+            voted = nets_of(self.first, self.second, best[1].pairs, best[0])
+            if voted == best[0]:
+                break
+            found = self._assigned(voted)
+            if found.cost >= best[1].cost:
+                break
+            best = voted, found
+        return best
 
-def _repaired(first: Graph, second: Graph, nets: list[int], found: Assignment) -> tuple[list[int], Assignment]:
-    """Exchange the images of nets that something is wrong with, as long as that helps."""
-    trials = _trials(first, second)
-    better = True
-    while better and trials > 0 and found.cost:
-        better = False
-        mine, theirs = _wrong(first, second, nets, found)
+    def _assigned(self, nets: list[int]) -> Assignment:
+        found = assign(self.first, self.second, nets)
+        self.left -= found.work
+        return found
+
+    def _repaired(self, nets: list[int], found: Assignment) -> Found:
+        """Exchange the images of nets that something is wrong with, as long as that helps."""
+        trials = TRIALS
+        while found.cost:
+            better = None
+            for tried in self._exchanged(nets, found):
+                if trials <= 0 or self.left <= 0:
+                    return nets, found
+                trials -= 1
+                other = self._settled(tried)
+                if other[1].cost < found.cost - 1e-9:
+                    better = other
+                    break
+            if better is None:
+                break
+            nets, found = better
+        return nets, found
+
+    def _exchanged(self, nets: list[int], found: Assignment) -> Iterator[list[int]]:
+        """Mappings that differ from one in the image of a net that something is wrong with."""
+        mine, theirs = _wrong(self.first, self.second, nets, found)
         for net in mine:
             for to in [*theirs, NO_NET]:
-                if nets[net] == to or trials <= 0:
+                if nets[net] == to or (to != NO_NET and self.first.package(net) != self.second.package(to)):
                     continue
-                if to != NO_NET and first.package(net) != second.package(to):
-                    continue
-                trials -= 1
                 tried = nets.copy()
                 if to != NO_NET and to in tried:
                     tried[tried.index(to)] = nets[net]
                 tried[net] = to
-                other = _settled(first, second, tried)
-                if other[1].cost < found.cost - 1e-9:
-                    nets, found = other
-                    better = True
-                    break
-            if better:
-                break
-    return nets, found
+                yield tried
 
 
 def _wrong(first: Graph, second: Graph, nets: Sequence[int], found: Assignment) -> tuple[list[int], list[int]]:

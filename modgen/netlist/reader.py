@@ -17,6 +17,8 @@ from modgen.problems import InputError, Place, Problem
 
 #: greatest size of a file [byte]; a netlist of 64 channels has 1 MB
 LARGEST = 20_000_000
+#: parts of one netlist; one of 64 channels has 700
+MOST_PARTS = 10_000
 #: longest reference, pin number or net name [character]
 LONGEST_NAME = 120
 #: problems that are reported of one file
@@ -141,6 +143,15 @@ class _Reader:
                 self.problem(self.root, f"the netlist has no ({head} ...)", "parts and nets are both needed")
         components, nets = sections["components"], sections["nets"]
         if components is None or nets is None:
+            raise InputError(self.problems)
+        count = sum(1 for _ in components.lists("comp"))
+        if count > MOST_PARTS:
+            self.problem(
+                components,
+                f"the netlist has {count} parts, more than {MOST_PARTS}",
+                "one of 64 channels has 700",
+                "check that this is the netlist, not some other file",
+            )
             raise InputError(self.problems)
         pins = self._library_pins()
         parts = [part for comp in components.lists("comp") if (part := self._part(comp, pins))]

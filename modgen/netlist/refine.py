@@ -101,8 +101,7 @@ class _Pair:
             for element, pins in zip(graph.elements, graph.pins, strict=True):
                 opened = tuple(sorted(slot for slot, net in pins if net < 0))
                 colour.append(names.setdefault((element.kind, element.aspects, opened), len(names)))
-            for net in range(len(graph.nets)):
-                colour.append(names.setdefault(graph.package(net), len(names)))
+            colour += [names.setdefault(graph.package(net), len(names)) for net in range(len(graph.nets))]
         members: dict[int, list[int]] = {}
         for node, c in enumerate(colour):
             members.setdefault(c, []).append(node)

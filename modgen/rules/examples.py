@@ -158,6 +158,8 @@ class Example:
 
     netlist: Netlist
     spec: Spec
+    #: what the example starts from: the circuit that is intended
+    start: Netlist | None = None
 
 
 def read_example(text: str, catalogue: Records) -> Example:
@@ -195,6 +197,7 @@ class _State:
         self.pins: list[tuple[str, str, str]] = []
         self.spec = EXAMPLE_SPEC
         self.messages: list[tuple[str, str]] = []
+        self.start: Netlist | None = None
 
     def line(self, line: str) -> None:
         """Do what one line says."""
@@ -207,6 +210,7 @@ class _State:
                 raise ExampleError(f"no board {name!r} in line {line!r}; there are {', '.join(sorted(BOARDS))}")
             for inner in BOARDS[name].strip().splitlines():
                 self.line(inner)
+            self.start = self._netlist()
         elif head == "spec:":
             self.spec = _changed(self.spec, rest)
         elif head == "library:":
@@ -262,16 +266,18 @@ class _State:
 
     def finish(self) -> Example:
         """Put parts and nets together."""
+        return Example(self._netlist(), self.spec, self.start)
+
+    def _netlist(self) -> Netlist:
         nets: dict[str, list[tuple[str, str]]] = {}
         for ref, pin, net in self.pins:
             nets.setdefault(net, []).append((ref, pin))
-        netlist = Netlist(
+        return Netlist(
             title=self.spec.module,
             parts=sorted_parts(self.parts),
             nets=sorted_nets(Net(name, tuple(pins)) for name, pins in nets.items()),
             library_messages=tuple(self.messages),
         )
-        return Example(netlist, self.spec)
 
 
 def _fitted(ref: str, key: str, record: Record | None) -> Part:

@@ -57,7 +57,8 @@ def judged(catalogue, by_name) -> Callable[..., Judged]:
         found = read_example(text, catalogue)
         rule = by_name[name]
         rules = discover() if rule.runs_last else (rule,)
-        return Judged(judge(found.netlist, catalogue, found.spec if with_spec else None, rules), name)
+        intended = found.start if with_spec and rule.needs_intended else None
+        return Judged(judge(found.netlist, catalogue, found.spec if with_spec else None, rules, intended), name)
 
     return run
 
@@ -74,6 +75,7 @@ def measured(catalogue, by_name) -> Callable[..., list[Measurement]]:
             Board.of(found.netlist, catalogue),
             found.spec if with_spec else None,
             found.netlist.library_messages,
+            intended=Board.of(found.start, catalogue) if with_spec and found.start else None,
         )
         return list(by_name[name].measure(context))
 

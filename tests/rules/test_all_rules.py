@@ -78,6 +78,7 @@ EXPECTED = {
         "stale-waiver",
         "value-differs-from-part",
     },
+    "spec": {"differs-from-spec"},
 }
 
 
@@ -156,7 +157,7 @@ def test_good_boards_pass_all_rules(board, catalogue, example):
     from modgen.rules.engine import judge
 
     found = example(f"start from: {board}")
-    report = judge(found.netlist, catalogue, found.spec)
+    report = judge(found.netlist, catalogue, found.spec, intended=found.start)
     assert [f.message for f in report.findings] == []
     assert report.cleared
     assert all(entry.judged for entry in report.checked)

@@ -130,17 +130,22 @@ class TestChecked:
     @pytest.mark.parametrize(
         ("changes", "why"),
         [
-            ("U1 8=VCC\nD1 1=VCC\nC2 1=VCC\nC4 1=VCC", "there is no net named V+"),
+            ("U1 8=VCC\nD1 1=BUS+ 2=VCC\nC2 1=VCC\nC4 1=VCC", "there is no net named V+"),
             ("U1 8=0V\nD1 1=0V\nC2 1=0V\nC4 1=0V", "net 0V carries 0V and V+"),
         ],
     )
     def test_without_rails_what_follows_currents_is_not_judged(self, catalogue, example, changes, why):
         found = example(f"start from: lane\n{changes}")
-        report = judge(found.netlist, catalogue, found.spec)
+        report = judge(found.netlist, catalogue, found.spec, intended=found.start)
         assert not report.cleared
         not_judged = {c.rule: c.not_judged for c in report.checked if not c.judged}
         assert not_judged == {rule.name: why for rule in discover() if rule.needs_rails}
-        assert {f.rule for f in report.findings} <= {"rail-not-named", "rails-shorted", "part-shorted-on-itself"}
+        assert {f.rule for f in report.findings} <= {
+            "rail-not-named",
+            "rails-shorted",
+            "part-shorted-on-itself",
+            "differs-from-spec",
+        }
 
     def test_without_margins_the_first_fault_is_named(self, catalogue):
         rule = make("some", [Measurement((), "fine"), Measurement((), "not fine", fault=fault())])
@@ -368,6 +373,7 @@ def test_names_and_subjects_are_those_of_all_rules():
         "signal",
         "function",
         "ordering",
+        "spec",
     ]
 
 

@@ -119,7 +119,7 @@ class TestRails:
 
     def test_names_do_not_matter(self, board):
         lane = board("start from: lane\nD1 1=SUPPLY 2=FROM-BUS\nJ1 9=FROM-BUS 10=FROM-BUS\nU1 8=SUPPLY")
-        assert (rails(lane)[0].bus, rails(lane)[0].protected) == ("FROM-BUS", ("SUPPLY",))
+        assert (rails(lane)[0].bus, rails(lane)[0].protected) == ("BUS+", ("SUPPLY",))
 
     def test_by_name_without_a_header(self, board):
         assert [rail.nets for rail in rails(board("start from: lane\nwithout J1"))] == [("BUS+", "V+"), ("BUS-", "V-")]

@@ -93,8 +93,9 @@ WARNED = {"a load so low that a short draws more than is usual": "warning capaci
 def said(path, catalogue) -> list[str]:
     spec = read_spec(path)
     # the circuit library has its say in tests/circuit; here it is taken to have found nothing
-    netlist = replace(plan_of(make_design(spec, catalogue), {}).netlist, library_messages=())
-    report = judge(netlist, catalogue, spec)
+    intended = plan_of(make_design(spec, catalogue), {}).netlist
+    netlist = replace(intended, library_messages=())
+    report = judge(netlist, catalogue, spec, intended=intended)
     assert all(checked.judged for checked in report.checked)
     return [f"{f.level} {f.rule} {list(f.parts)}: {f.message}" for f in report.findings]
 

@@ -5,13 +5,18 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from modgen.rules.contract import Context, Fault, Measurement, Rule
+from modgen.rules.lost import TOLD
+from modgen.rules.structure import without_function
+from modgen.rules.support import listed
 
 
 class NotInCatalogue(Rule):
     """Every part is one that the catalogue knows.
 
     Checks:
-        The field ``part`` of every part is a key of the catalogue.
+        The field ``part`` of every part is a key of the catalogue. A part that lost the field, and whose
+        value names one part of the spec of its reference class, or an order code, is taken for that; a note
+        says so. Mounting holes, test points and logos that join nothing are not parts.
     Matters:
         Without a record no rating, pin or price of the part is known: every other rule passes over it,
         and it cannot be ordered.
@@ -21,7 +26,8 @@ class NotInCatalogue(Rule):
     Passes:
         start from: lane
     Limits:
-        A part that carries the wrong key is judged by the wrong record.
+        A part that carries the wrong key is judged by the wrong record; so is one whose value is that of
+        another.
     References:
         Common practice: a parts list names orderable parts.
     """
@@ -32,7 +38,13 @@ class NotInCatalogue(Rule):
 
     def measure(self, context: Context) -> Iterator[Measurement]:
         """Every part."""
+        aside = without_function(context.board)
+        told: dict[str, list[str]] = {}
         for part in context.board.netlist.parts:
+            if part.ref in aside:
+                continue
+            if part.field(TOLD):
+                told.setdefault(part.field("part"), []).append(part.ref)
             key = part.field("part")
             fault = None
             if context.board.record(part.ref) is None:
@@ -43,3 +55,8 @@ class NotInCatalogue(Rule):
                     "correct the field 'part', or add the part to a file listed under build.catalogue",
                 )
             yield Measurement(parts=(part.ref,), what=f"{part.ref} is {key or 'unnamed'}", fault=fault)
+        for key, refs in told.items():
+            message = f"{listed(refs)} {'name' if len(refs) > 1 else 'names'} no catalogue part; taken for {key}"
+            why = "value and reference class are that part's; whether it was meant cannot be judged"
+            fault = Fault(message, why, f"give back the field 'part': {key}", level="note")
+            yield Measurement(parts=tuple(refs), what=message, fault=fault)

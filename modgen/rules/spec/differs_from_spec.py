@@ -95,7 +95,8 @@ def _measured(d: Difference, board: Board) -> Measurement:
         fix = f"fit {wants} as {d.ref}, or change the spec"
     elif d.kind == "joined":
         found, wanted = d.wires
-        message = f"net {found.here} joins what the spec keeps apart: {wanted.there} ({_pins(d.pins)}) and {found.there}"
+        apart = f"{wanted.there} ({_pins(d.pins)}) and {found.there}"
+        message = f"net {found.here} joins what the spec keeps apart: {apart}"
         fix = f"part {wanted.there} from {found.there}"
     elif d.kind in ("cut", "shifted"):
         found, wanted = d.wires

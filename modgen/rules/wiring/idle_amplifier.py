@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 from modgen.analysis.board import Board, Section
 from modgen.rules.contract import Context, Fault, Measurement, Rule
-from modgen.rules.support import ground_nets, least_path
+from modgen.rules.support import ground_nets, least_path, listed
 
 
 class IdleAmplifier(Rule):
@@ -15,7 +15,7 @@ class IdleAmplifier(Rule):
     Checks:
         Each section whose output leads to nothing but itself: its output is tied to its inverting
         input, and its non-inverting input to 0 V, straight or through a resistor (through a resistor
-        where the type wants that).
+        where the type wants that), on a net that no signal is on.
     Matters:
         An open section sits at a rail or oscillates, heats its package and couples into its neighbours.
     Fails:
@@ -68,6 +68,14 @@ class IdleAmplifier(Rule):
                 why,
                 f"take pin {noninverting} of {section.package} to 0 V",
             )
+        shared = [other for other in board.sections if net not in grounds and _lives_on(board, other, section, net)]
+        if shared:
+            return Fault(
+                f"{section.name} is not used, and its non-inverting input (pin {noninverting}) shares net {net} with "
+                f"{listed(other.name for other in shared)}",
+                "it follows a signal in the place of 0 V, and its tie loads that signal",
+                f"give pin {noninverting} of {section.package} a net of its own",
+            )
         if section.record.ground_input_through_resistor and not path[2]:
             return Fault(
                 f"{section.name} is not used, and its non-inverting input (pin {noninverting}) is tied straight to 0 V",
@@ -76,6 +84,13 @@ class IdleAmplifier(Rule):
                 level="warning",
             )
         return None
+
+
+def _lives_on(board: Board, other: Section, idle: Section, net: str | None) -> bool:
+    """Whether another section drives a net, or reads it for something that is used."""
+    if (other.package, other.index) == (idle.package, idle.index):
+        return False
+    return net == other.output or (net in (other.inverting, other.noninverting) and in_use(board, other))
 
 
 def in_use(board: Board, section: Section) -> bool:

@@ -10,6 +10,8 @@ from modgen.rules.support import may_stay_open
 
 #: A net joins at least this many pins [pins]. Source: what a net is.
 LEAST_PINS = 2
+#: nets of a netlist in which a name that was meant is guessed
+MOST_NAMES = 1000
 
 
 class LoneNet(Rule):
@@ -39,7 +41,8 @@ class LoneNet(Rule):
     def measure(self, context: Context) -> Iterator[Measurement]:
         """Every net."""
         board = context.board
-        names = [net.name for net in board.netlist.nets]
+        # a guess at the right name takes a look at every name
+        names = [net.name for net in board.netlist.nets] if len(board.netlist.nets) <= MOST_NAMES else []
         for net in board.netlist.nets:
             fault = None
             count = len(net.pins)

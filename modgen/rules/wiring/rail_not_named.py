@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
+from modgen.analysis.board import Board
 from modgen.rules.contract import Context, Fault, Measurement, Rule
 from modgen.rules.supplies import NAMES, WORDS, unnamed
 from modgen.rules.support import listed
@@ -14,15 +15,16 @@ class RailNotNamed(Rule):
 
     Checks:
         There is a net 0V; the nets on the packages' supply pins are called V+ and, where there is a
-        negative supply, V-; those on the header's supply pins BUS+ and BUS-. Without 0V, V+ or V- the
-        rules that follow currents and voltages are not judged: they would take the supply for a
-        signal and report every part on it.
+        negative supply, V-; those on the header's supply pins BUS+ and BUS-. A supply of another name is
+        taken for what it is where header, diodes and supply pins leave no doubt, and a note says so.
+        Where they do and 0V, V+ or V- are not there, the rules that follow currents and voltages are not
+        judged: they would take the supply for a signal and report every part on it.
     Matters:
         A rule that looks for 0 V and does not find it can clear nothing, and dozens of findings that
         all come from one name hide the others.
     Fails:
         start from: lane
-        J1 3=GND 4=GND 5=GND 6=GND 7=GND 8=GND
+        without J1
         J2 TN=GND S=GND
         J3 S=GND
         R1 2=GND
@@ -53,7 +55,8 @@ class RailNotNamed(Rule):
             supply = missing.get(name)
             if supply is None:
                 if name in board.netlist.by_net:
-                    yield Measurement(parts=(), what=f"{name}: {len(board.on(name))} pins", nets=(name,))
+                    what = f"{name}: {len(board.on(name))} pins"
+                    yield Measurement(parts=(), what=what, nets=(name,), fault=_own(board, name))
                 continue
             where = f": {supply.where}" if supply.where else ""
             why = "every voltage is measured from it" if name == "0V" else f"{name} is {WORDS[name]}"
@@ -67,3 +70,16 @@ class RailNotNamed(Rule):
                 nets=supply.nets,
                 fault=Fault(f"there is no net named {name}{where}", why, fix),
             )
+
+
+def _own(board: Board, name: str) -> Fault | None:
+    """A note for a supply that is plain to see under another name."""
+    own = dict(board.own_names).get(name)
+    if own is None:
+        return None
+    return Fault(
+        f"net {own} is taken for {name}, and called so in what follows",
+        f"its pins say that it is {WORDS[name]}",
+        f"nothing, or call net {own} {name}",
+        level="note",
+    )

@@ -74,18 +74,19 @@ def assign(first: Graph, second: Graph, nets: Sequence[int]) -> Assignment:
     """
     pairs, rest, spare = _exact(first, second, nets)
     found: list[tuple[float, bool, int, int]] = []
-    at: dict[tuple[str, str, int], list[int]] = defaultdict(list)
+    at: dict[tuple[str, int], list[int]] = defaultdict(list)
     called: dict[tuple[str, str], list[int]] = defaultdict(list)
     for other in spare:
         element = second.elements[other]
         called[element.ref, element.kind].append(other)
-        for slot, net in second.pins[other]:
-            at[element.kind, slot, net].append(other)
+        for net in {net for _, net in second.pins[other]}:
+            at[element.kind, net].append(other)
     for one in rest:
         element = first.elements[one]
         near = set(called.get((element.ref, element.kind), ()))
-        for slot, net in first.pins[one]:
-            near.update(at.get((element.kind, slot, nets[net] if net >= 0 else OPEN), [])[:MOST])
+        # on whatever pin: a diode that was turned round is still that diode
+        for _, net in first.pins[one]:
+            near.update(at.get((element.kind, nets[net] if net >= 0 else OPEN), [])[:MOST])
         for other in near:
             cost = pair_cost(first, second, nets, one, other)
             if cost < alone_cost(first, one) + alone_cost(second, other):

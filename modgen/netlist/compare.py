@@ -177,23 +177,25 @@ class _Account:
 
     def _moved(self, one: int, other: int) -> tuple[list[Moved], bool]:
         """The pins of a pair that are elsewhere, and whether the package is another."""
-        want: dict[str, list[int]] = defaultdict(list)
-        for slot, net in self.first.pins[one]:
-            want[slot].append(net)
+        want: dict[str, list[tuple[int, str]]] = defaultdict(list)
+        for (slot, net), pin in zip(self.first.pins[one], self.first.elements[one].pins, strict=True):
+            want[slot].append((net, pin.number))
         have: dict[str, list[tuple[int, str]]] = defaultdict(list)
         element = self.second.elements[other]
         for (slot, net), pin in zip(self.second.pins[other], element.pins, strict=True):
             have[slot].append((net, pin.number))
         out, member = [], False
         for slot, mine in want.items():
-            left, theirs = [], list(have.get(slot, ()))
-            for net in mine:
-                to = self.nets[net] if net >= 0 else OPEN
-                same = next((pin for pin in theirs if pin[0] == to), None)
-                if same is None:
-                    left.append(net)
+            theirs = have.get(slot, [])
+            left = []
+            to = {number: self.nets[net] if net >= 0 else OPEN for net, number in mine}
+            # of pins that may change places those that did not are right
+            for net, number in sorted(mine, key=lambda pin: (to[pin[1]], pin[1]) not in theirs):
+                same = [pin for pin in theirs if pin[0] == to[number]]
+                if same:
+                    theirs.remove((to[number], number) if (to[number], number) in same else same[0])
                 else:
-                    theirs.remove(same)
+                    left.append(net)
             if slot == MEMBER:
                 member = bool(left)
                 continue

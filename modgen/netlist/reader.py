@@ -18,7 +18,7 @@ from modgen.problems import InputError, Place, Problem
 #: greatest size of a file [byte]; a netlist of 64 channels has 1 MB
 LARGEST = 20_000_000
 #: parts of one netlist; one of 64 channels has 700
-MOST_PARTS = 10_000
+MOST_PARTS = 4_000
 #: longest reference, pin number or net name [character]
 LONGEST_NAME = 120
 #: problems that are reported of one file

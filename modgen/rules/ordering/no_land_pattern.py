@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from modgen.rules.contract import Context, Fault, Measurement, Rule
+from modgen.rules.structure import without_function
 
 
 class NoLandPattern(Rule):
@@ -31,9 +32,11 @@ class NoLandPattern(Rule):
 
     def measure(self, context: Context) -> Iterator[Measurement]:
         """Every part."""
+        # a logo is drawn, not fitted; nothing of the circuit is missing without it
+        aside = without_function(context.board)
         for part in context.board.netlist.parts:
             fault = None
-            if not part.land_pattern.strip():
+            if not part.land_pattern.strip() and part.ref not in aside:
                 fault = Fault(
                     f"{part.ref} ({part.value or 'no value'}) has no land pattern",
                     "a layout editor drops or refuses a part that it cannot place",

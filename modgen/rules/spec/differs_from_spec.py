@@ -86,13 +86,14 @@ def _measured(d: Difference, board: Board) -> Measurement:
         message = f"{_part(d)}{_between(d.wires)} is missing: {d.intended} of the spec"
         fix = "put it back"
     elif d.kind == "extra":
-        message = f"{d.ref} ({_part(d)}){_between(d.wires)} is not in the spec"
+        message = f"{d.ref}, {_part(d)}{_between(d.wires)}, is not in the spec"
         fix = f"take {d.ref} out, or ask for it in the spec"
     elif d.kind == "changed":
         is_, wants = _changes(d)
         there = f" for {d.intended}" if d.intended != d.ref else ""
-        message = f"{d.ref} is {is_}, the spec wants {wants}{there}"
-        fix = f"fit {wants} as {d.ref}, or change the spec"
+        verb = "has" if all(name in UNITS for name, _, _ in d.aspects) else "is"
+        message = f"{d.ref} {verb} {is_}, the spec wants {wants}{there}"
+        fix = f"make {d.ref} what the spec wants, or change the spec"
     elif d.kind == "joined":
         found, wanted = d.wires
         apart = f"{wanted.there} ({_pins(d.pins)}) and {found.there}"
@@ -170,20 +171,26 @@ def _between(wires: tuple[Wire, ...]) -> str:
 def _part(d: Difference) -> str:
     """A part that has no partner: kind, value and catalogue part."""
     held = {name: text for name, text, _ in d.aspects}
-    kind = "amplifier" if held["kind"] == "package" else held["kind"]
-    words = [kind, _aspect("value", held["value"]) if "value" in held else "", held.get("part", "")]
-    return " ".join(word for word in words if word)
+    return _words({name: held[name] for name in ("kind", "value", "part") if name in held})
 
 
 def _changes(d: Difference) -> tuple[str, str]:
     """What a part is and what it should be; ratings only where the parts are the same but for them."""
     names = [name for name, _, _ in d.aspects]
     shown = [n for n in ("kind", "value", "part") if n in names] or names
-    out = []
+    sides = []
     for side in (1, 2):
-        words = [_aspect(a[0], a[side]) for name in shown for a in d.aspects if a[0] == name and a[side]]
-        out.append(" ".join(words) or "not stated")
-    return out[0], out[1]
+        held = {aspect[0]: aspect[side] for aspect in d.aspects if aspect[side]}
+        sides.append(_words({name: held[name] for name in shown if name in held}) or "not stated")
+    return sides[0], sides[1]
+
+
+def _words(held: dict[str, str]) -> str:
+    """Aspects in a row, the catalogue part behind them in brackets."""
+    words = [_aspect(name, text) for name, text in held.items() if name != "part"]
+    if "part" in held:
+        words.append(f"({held['part']})" if words else held["part"])
+    return " ".join(words)
 
 
 def _aspect(name: str, text: str) -> str:

@@ -87,16 +87,21 @@ def check(options: argparse.Namespace) -> int:
     if options.format == "json":
         from modgen.outputs.design_json import findings_json
 
-        print(json.dumps(findings_json(report), indent=2, ensure_ascii=False))
+        page = findings_json(report)
+        missed = [{"rule": c.rule, "why": c.not_judged} for c in report.checked if not c.judged]
+        if missed:
+            # without it, "cleared" would promise more than was looked at
+            page["not_judged"] = missed
+        print(json.dumps(page, indent=2, ensure_ascii=False))
     elif options.format == "sarif":
         from modgen.outputs.sarif import sarif_log
 
         _print_bytes(sarif_log(report, spec, options.netlist or "", folders=True))
     else:
         print(report_text(report, bool(options.spec)), end="")
-        missed = [checked.rule for checked in report.checked if not checked.judged]
         if not options.spec:
-            print(f"no spec was given; {len(missed)} rules were not judged: {', '.join(missed)}")
+            left = [checked.rule for checked in report.checked if not checked.judged]
+            print(f"no spec was given; {len(left)} rules were not judged: {', '.join(left)}")
     return CLEAN if report.cleared else FINDINGS
 
 

@@ -113,3 +113,10 @@ def test_two_hundred_megabytes_are_not_read(tmp_path: Path, modgen: Callable) ->
     assert (ran.status, ran.out) == (2, "")
     assert ran.err.startswith("bad.net: error: the file has 200000000 bytes, more than 20000000")
     assert resource.getrusage(resource.RUSAGE_SELF).ru_maxrss - before < 50_000  # kilobyte
+
+
+def test_json_of_a_netlist_by_itself_says_what_was_not_judged(netlist: Path, modgen: Callable) -> None:
+    page = json.loads(modgen("check", "--netlist", "back.net", "--format", "json").out)
+    missed = {entry["rule"]: entry["why"] for entry in page["not_judged"]}
+    assert {"glide-range", "differs-from-spec", "library-erc"} <= set(missed)
+    assert all(missed.values())

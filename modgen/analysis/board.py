@@ -134,10 +134,6 @@ class Board:
         kinds = {ref: self.kind(ref) for ref in self.refs}
         return {kind: tuple(ref for ref in self.refs if kinds[ref] == kind) for kind in sorted(set(kinds.values()))}
 
-    def with_role(self, role: str) -> tuple[str, ...]:
-        """References whose ``role`` field says so; only for wording, never for judging."""
-        return tuple(ref for ref in self.refs if self.part(ref).field("role") == role)
-
     def pins(self, ref: str) -> tuple[str, ...]:
         """Pin numbers of a part: the record's, else the netlist's own, else those that are connected."""
         record = self.record(ref)

@@ -7,6 +7,7 @@ from collections.abc import Iterable, Sequence
 from pathlib import Path
 
 from modgen.analysis.model import AccuracyBudget, ChannelGlide, Interval
+from modgen.formulas.pitch import scale_to_cents
 from modgen.outputs.bom import short_ranges
 from modgen.outputs.model import Job
 from modgen.rules import Finding, Report, subjects
@@ -177,7 +178,7 @@ def _share(share: float) -> str:
 
 def _scale(budget: AccuracyBudget, pitch: bool) -> str:
     if pitch:
-        return f"{1200 * budget.scale_worst:.3g} of {1200 * budget.scale_budget:.3g} cents per octave"
+        return f"{scale_to_cents(budget.scale_worst):.3g} of {scale_to_cents(budget.scale_budget):.3g} cents per octave"
     return f"{_share(budget.scale_worst)} of {_share(budget.scale_budget)}"
 
 

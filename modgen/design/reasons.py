@@ -15,6 +15,7 @@ from modgen.design.stage import loading_paths
 from modgen.design.supply import Ends, reverse_stress
 from modgen.formulas.amplifier import clamp_current, short_power
 from modgen.formulas.loading import loading_error
+from modgen.formulas.pitch import scale_to_cents as cents
 from modgen.spec.model import Spec
 from modgen.units import format_quantity as text
 
@@ -69,7 +70,7 @@ def _lost(spec: Spec, best: Candidate, other: Candidate) -> str:
     if spec.build.prefer == "size" and other.cost > best.cost:
         return f"takes as much area and costs {other.cost / best.cost - 1:.1%} more at {whose_prices(spec)}"
     if other.error > best.error:
-        return f"{1200 * other.error:.3g} instead of {1200 * best.error:.3g} cents of error, worst case"
+        return f"{cents(other.error):.3g} instead of {cents(best.error):.3g} cents of error, worst case"
     return "equal in what was asked; it comes later by name"
 
 
@@ -133,7 +134,8 @@ def _ranges(spec: Spec, outcome: Outcome, values: Values) -> list[Choice]:
         Choice(
             "range-capacitor",
             added.key,
-            f"switched in beside {values.glide.key} for the slow range, which begins at {text(slow_shortest, 'time')}; "
+            f"switched in beside {values.glide.key} for the slow range, which begins at "
+            f"{text(slow_shortest, 'time')}; "
             f"the fast range ends at {text(fast_longest, 'time')}, so that nothing is missing between them",
             "the overlap of the ranges",
             1 - slow_shortest / fast_longest,
@@ -164,7 +166,7 @@ def _terminator(spec: Spec, values: Values) -> Choice:
         "terminator",
         r.key,
         f"holds an open input at 0 V and loads a {text(spec.signal.source, 'resistance')} source by "
-        f"{1200 * error:.3g} cents per octave{several}",
+        f"{cents(error):.3g} cents per octave{several}",
         "the scale budget",
         1 - error / spec.accuracy.scale,
     )
@@ -193,7 +195,7 @@ def _output(spec: Spec, values: Values) -> list[Choice]:
     heat = f"an output shorted to 0 V puts {text(power, 'power')} into it, rated {text(r.power, 'power')}"
     if not values.inside_loop:
         error = loading_error(r.resistance * (1 + r.tolerance), spec.signal.load)
-        reason = f"{heat}; into {text(spec.signal.load, 'resistance')} it costs {1200 * error:.3g} cents per octave"
+        reason = f"{heat}; into {text(spec.signal.load, 'resistance')} it costs {cents(error):.3g} cents per octave"
         return [Choice("output-series", r.key, reason, "power with the output shorted", share)]
     assert values.feedback is not None
     assert values.compensation is not None

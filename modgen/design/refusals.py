@@ -10,6 +10,7 @@ from dataclasses import replace
 from modgen.catalogue import Catalogue
 from modgen.catalogue.records import Amplifier, Capacitor
 from modgen.design.network import Grid, Reach, Room
+from modgen.formulas.pitch import scale_to_cents as cents
 from modgen.problems import InputError, Problem
 from modgen.spec.model import Spec
 from modgen.units import format_quantity
@@ -81,8 +82,8 @@ def network_fault(grid: Grid | None, room: Room) -> str:
             f"{format_quantity(max(room.offset, 0.0), 'voltage')} of the budget are left"
         )
     return (
-        f"the capacitor's insulation costs {1200 * float(grid.scale[able].min()):.3g} cents per octave at least; "
-        f"{1200 * max(room.scale, 0.0):.3g} of the budget are left"
+        f"the capacitor's insulation costs {cents(float(grid.scale[able].min())):.3g} cents per octave at least; "
+        f"{cents(max(room.scale, 0.0)):.3g} of the budget are left"
     )
 
 

@@ -21,6 +21,7 @@ from modgen.design.stage import loading_paths, terminators
 from modgen.design.supply import Ends, headroom, price_at
 from modgen.formulas.amplifier import clamp_current, short_power
 from modgen.formulas.loading import loading_error
+from modgen.formulas.pitch import scale_to_cents as cents
 from modgen.spec.model import Spec
 from modgen.units import format_quantity as text
 
@@ -92,8 +93,8 @@ def network_lost(spec: Spec, best: Network, other: Network) -> str:
         return f"costs {other.cost - best.cost:.2f} more a channel at {whose_prices(spec)}"
     if spec.build.prefer == "size" and other.area > best.area:
         return f"takes {(other.area - best.area) * 1e6:.0f} mm2 more a channel"
-    insulation = f"insulation costs {1200 * other.scale:.3g} instead of {1200 * best.scale:.3g} cents per octave"
-    worse = 1200 * (other.scale - best.scale) >= practice.ERROR_STEP
+    insulation = f"insulation costs {cents(other.scale):.3g} instead of {cents(best.scale):.3g} cents per octave"
+    worse = cents(other.scale - best.scale) >= practice.ERROR_STEP
     if spec.build.prefer == "accuracy" and worse:
         return insulation
     if other.mismatch > best.mismatch * (1 + 1e-6):
@@ -216,7 +217,8 @@ def _terminator(spec: Spec, catalogue: Catalogue, values: Values) -> Why:
         share = next((s for s in sorted(shares) if lost > s * budget), None)
         if r.resistance < values.terminator.resistance and share is not None:
             return (
-                f"loads the source by {1200 * lost:.3g} cents per octave, more than the {text(share, 'ratio')} of the "
+                f"loads the source by {cents(lost):.3g} cents per octave, more than the "
+                f"{text(share, 'ratio')} of the "
                 "scale budget that loading is allowed"
             )
         if r.resistance > practice.MOST_TERMINATOR:
@@ -224,7 +226,7 @@ def _terminator(spec: Spec, catalogue: Catalogue, values: Values) -> Why:
         if r.resistance < practice.LEAST_TERMINATOR:
             return f"below {text(practice.LEAST_TERMINATOR, 'resistance')} other sources are loaded as well"
         if r.resistance in tried or r.resistance < values.terminator.resistance:
-            return f"loads the source by {1200 * lost:.3g} instead of {1200 * mine:.3g} cents per octave"
+            return f"loads the source by {cents(lost):.3g} instead of {cents(mine):.3g} cents per octave"
         return "the lowest that the scale budget allows is taken: dirt on the board counts less beside it"
 
     return why
@@ -290,11 +292,11 @@ def _output(spec: Spec, outcome: Outcome, values: Values) -> Why:
             scale = loading_error(r.resistance * (1 + r.tolerance), spec.signal.load)
             if rest + scale > spec.accuracy.scale:
                 return (
-                    f"scale would be off by {1200 * (rest + scale):.3g} cents per octave in all; the budget is "
-                    f"{1200 * spec.accuracy.scale:.3g} cents per octave"
+                    f"scale would be off by {cents(rest + scale):.3g} cents per octave in all; the budget is "
+                    f"{cents(spec.accuracy.scale):.3g} cents per octave"
                 )
             if scale > output.scale:
-                return f"costs {1200 * scale:.3g} instead of {1200 * output.scale:.3g} cents per octave into the load"
+                return f"costs {cents(scale):.3g} instead of {cents(output.scale):.3g} cents per octave into the load"
         if current > practice.MOST_SHORT:
             return f"draws {text(current, 'current')} when shorted; {text(practice.MOST_SHORT, 'current')} is usual"
         now = min(rail / values.output_series.resistance, amplifier.short_circuit_most)

@@ -27,6 +27,7 @@ from modgen.design.supply import (
 )
 from modgen.formulas.amplifier import common_mode_error, follower_gain_error, short_power
 from modgen.formulas.loading import loading_error, parallel
+from modgen.formulas.pitch import scale_to_cents as cents
 from modgen.formulas.shorts import section_power
 from modgen.spec.model import Spec
 from modgen.units import format_quantity
@@ -314,9 +315,9 @@ def _budget_fault(
         if loading == float("inf"):
             return "no terminator in the catalogue loads the source little enough for the scale budget"
         return (
-            f"scale is off by {1200 * total:.3g} cents per octave at best; the budget is "
-            f"{1200 * spec.accuracy.scale:.3g} (loading of the source {1200 * loading:.3g}, output resistor "
-            f"{1200 * best:.3g}, common-mode rejection and gain of two buffers {1200 * buffers_error(a):.3g})"
+            f"scale is off by {cents(total):.3g} cents per octave at best; the budget is "
+            f"{cents(spec.accuracy.scale):.3g} (loading of the source {cents(loading):.3g}, output resistor "
+            f"{cents(best):.3g}, common-mode rejection and gain of two buffers {cents(buffers_error(a)):.3g})"
         )
     return "scale and offset budgets cannot both be kept"
 
